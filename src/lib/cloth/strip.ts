@@ -1,0 +1,76 @@
+import { z } from 'zod';
+
+/*
+ * The cloth as it lies on the table: one strip of a usable width, seen from above. x = 0 is the cloth's start,
+ * y = 0 the near selvedge (or the fold), both after margins.
+ */
+
+const mm = z.number().finite().min(0).max(1e6);
+
+/** One layer of cloth in a zone. */
+export const layerSchema = z.object({
+  /** Which side of the cloth looks up. */
+  sideUp: z.enum(['right', 'wrong']),
+  /** Whether the nap runs towards +x, as on the top ply, or against it. */
+  nap: z.enum(['along', 'against'])
+});
+
+/** A stretch of the width that has the same layers throughout. The first form of the product knows one zone of one layer. */
+export const zoneSchema = z.object({
+  from: mm,
+  to: mm,
+  /** Top ply first. */
+  layers: z.array(layerSchema).min(1).max(200),
+  /** Which side of the zone is a fold of the cloth. */
+  fold: z.enum(['none', 'near', 'far'])
+});
+export type Zone = z.infer<typeof zoneSchema>;
+
+export const repeatSchema = z.object({
+  /** Distance from line to line. */
+  size: z.number().finite().min(1).max(5000),
+  /** The first line, from the cloth's start (along) or the near selvedge (across). */
+  offset: z.number().finite().min(0).max(5000),
+  symmetric: z.boolean()
+});
+
+export const flawSchema = z.object({
+  id: z.string().min(1).max(64),
+  x: mm,
+  y: mm,
+  radius: z.number().finite().min(0).max(5000),
+  note: z.string().max(200)
+});
+
+export const stripSchema = z.object({
+  spread: z.array(zoneSchema).min(1).max(20),
+  usableWidth: z.number().finite().min(10).max(10_000),
+  /** Full width with both selvedges; for utilisation and the guide's frame. */
+  fullWidth: z.number().finite().min(10).max(10_000),
+  /** null while the length is open. */
+  length: z.number().finite().min(1).max(200_000).nullable(),
+  /** none: no nap; oneWay: every piece the same way; garmentWay: each garment one way, garments may alternate. */
+  nap: z.enum(['none', 'oneWay', 'garmentWay']),
+  /** Whether both sides of the cloth are alike, so that a flip keeps the hand free. */
+  sidesAlike: z.boolean(),
+  repeat: z.object({ along: repeatSchema.nullable(), across: repeatSchema.nullable() }),
+  flaws: z.array(flawSchema).max(1000),
+  endAllowance: z.object({ start: mm.max(2000), end: mm.max(2000) }),
+  /** Added to the length to buy, before rounding up. */
+  reserve: mm.max(10_000),
+  /** What the studio buys in whole multiples of. */
+  buyStep: z.number().finite().min(0.1).max(10_000),
+  /** The least distance between two cut lines, and between a cut line and a flaw. */
+  clearance: z.number().finite().min(0).max(100)
+});
+export type Strip = z.infer<typeof stripSchema>;
+
+/** Which side of the cloth looks up: that of the top ply nearest to y = 0. */
+export function sideUp(strip: Strip): 'right' | 'wrong' {
+  return strip.spread[0]!.layers[0]!.sideUp;
+}
+
+/** Open cloth, one ply, over the whole usable width. */
+export function openSpread(usableWidth: number, side: 'right' | 'wrong' = 'right'): Zone[] {
+  return [{ from: 0, to: usableWidth, layers: [{ sideUp: side, nap: 'along' }], fold: 'none' }];
+}

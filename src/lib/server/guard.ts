@@ -1,0 +1,86 @@
+import { error, isHttpError, isRedirect, redirect, type RequestEvent } from '@sveltejs/kit';
+import { z } from 'zod';
+import { may, type Permission } from './permissions';
+import { Problem, problemResponse } from './problem';
+import type { Scope } from './scope';
+
+/*
+ * The door of every page, form action and API route. `allow` for pages, `api` for JSON routes: both ask the
+ * permission table, nothing else decides.
+ */
+
+/**
+ * The scope of the person, if they hold `permission` in the studio they work in. Signed out: to the sign-in page and
+ * back. Without a studio: to the list of studios. Without the permission: 403.
+ */
+export function allow(event: Pick<RequestEvent, 'locals' | 'url'>, permission: Permission): Scope {
+  const { person, scope } = event.locals;
+  if (!person.user)
+    redirect(303, `/sign-in?next=${encodeURIComponent(event.url.pathname + event.url.search)}`);
+  if (!scope) redirect(303, '/studios');
+  if (!may(scope.role, permission)) error(403, 'Your role in this studio does not include this.');
+  return scope;
+}
+
+/** Runs a repository call of a page: a refusal becomes an error page with the same words. */
+export async function orErrorPage<T>(work: Promise<T>): Promise<T> {
+  try {
+    return await work;
+  } catch (refusal) {
+    if (refusal instanceof Problem) error(refusal.status, refusal.message);
+    throw refusal;
+  }
+}
+
+/**
+ * A JSON route: guards, runs `handler`, answers refusals as problem details. `handler` may return any JSON value or
+ * a Response of its own.
+ */
+export function api<E extends RequestEvent>(
+  permission: Permission,
+  handler: (scope: Scope, event: E) => unknown
+): (event: E) => Promise<Response> {
+  return async (event) => {
+    const { locals } = event;
+    try {
+      if (!locals.person.user)
+        throw new Problem(401, 'signed-out', 'You are signed out', 'Sign in again; nothing you did is lost.');
+      if (!locals.scope)
+        throw new Problem(403, 'no-studio', 'No studio', 'Choose a studio that you belong to first.');
+      if (!may(locals.scope.role, permission))
+        throw new Problem(
+          403,
+          'not-allowed',
+          'Not allowed',
+          'Your role in this studio does not include this.'
+        );
+      const answer = await handler(locals.scope, event);
+      return answer instanceof Response ? answer : Response.json(answer ?? null);
+    } catch (refusal) {
+      if (refusal instanceof Problem) return problemResponse(refusal, locals.requestId);
+      if (isRedirect(refusal)) throw refusal;
+      if (isHttpError(refusal))
+        return problemResponse(
+          new Problem(refusal.status, 'refused', refusal.body.message),
+          locals.requestId
+        );
+      throw refusal;
+    }
+  };
+}
+
+/** The JSON body of a request through `schema`; a body that does not fit is refused with every place that is wrong. */
+export async function readBody<S extends z.ZodType>(request: Request, schema: S): Promise<z.output<S>> {
+  let body: unknown;
+  try {
+    body = await request.json();
+  } catch {
+    throw new Problem(400, 'not-json', 'The request is not JSON', 'Send a JSON body.');
+  }
+  const parsed = schema.safeParse(body);
+  if (!parsed.success)
+    throw new Problem(400, 'invalid-input', 'The request does not fit', z.prettifyError(parsed.error), {
+      issues: parsed.error.issues.slice(0, 50).map(({ path, message }) => ({ path, message }))
+    });
+  return parsed.data;
+}
