@@ -1,0 +1,32 @@
+import { redirect } from '@sveltejs/kit';
+import { may } from '$lib/server/permissions';
+import type { LayoutServerLoad } from './$types';
+
+const roleWords = { owner: 'owner', patternMaker: 'pattern maker', cutter: 'cutter' } as const;
+
+/** Who and where the shell shows. Each page still asks for its own permission. */
+export const load: LayoutServerLoad = ({ locals, url }) => {
+  const { person, scope, studio } = locals;
+  if (!person.user) redirect(303, `/sign-in?next=${encodeURIComponent(url.pathname + url.search)}`);
+  const places = scope
+    ? [
+        { href: '/orders', word: 'Orders' },
+        { href: '/lays', word: 'Lays' },
+        { href: '/styles', word: 'Styles' },
+        { href: '/cloths', word: 'Cloths' },
+        ...(may(scope.role, 'people: manage') ? [{ href: '/people', word: 'People' }] : []),
+        { href: '/help', word: 'Help' }
+      ]
+    : [{ href: '/help', word: 'Help' }];
+  return {
+    places,
+    personName: person.user.name,
+    role: scope ? roleWords[scope.role] : null,
+    studio: studio && {
+      name: studio.name,
+      currency: studio.currency,
+      lengthUnit: studio.lengthUnit,
+      timeZone: studio.timeZone
+    }
+  };
+};
