@@ -14,6 +14,7 @@ export const layerSchema = z.object({
   /** Whether the nap runs towards +x, as on the top ply, or against it. */
   nap: z.enum(['along', 'against'])
 });
+export type Layer = z.infer<typeof layerSchema>;
 
 /** A stretch of the width that has the same layers throughout. The first form of the product knows one zone of one layer. */
 export const zoneSchema = z.object({
@@ -47,7 +48,7 @@ export const stripSchema = z.object({
   usableWidth: z.number().finite().min(10).max(10_000),
   /** Full width with both selvedges; for utilisation and the guide's frame. */
   fullWidth: z.number().finite().min(10).max(10_000),
-  /** null while the length is open. */
+  /** From x = 0 to the end line, end allowances excluded; null while the length is open. */
   length: z.number().finite().min(1).max(200_000).nullable(),
   /** none: no nap; oneWay: every piece the same way; garmentWay: each garment one way, garments may alternate. */
   nap: z.enum(['none', 'oneWay', 'garmentWay']),

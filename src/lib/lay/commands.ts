@@ -1,0 +1,393 @@
+import { boundingBox } from '$lib/geometry/polygon';
+import { cosSin, placeOutline, snapPlacement, snapTurn, type Placement } from '$lib/geometry/placement';
+import type { Box, Point } from '$lib/geometry/point';
+import type { Degrees, Millimetres } from '$lib/units/measure';
+import type { LayDocument, LayPlacement } from './document';
+import { balance, panelOfPlacement, type LoosePiece } from './needs';
+import { panelOf, type LayPanel, type PanelBook } from './panel-book';
+import { allowedTurns, nearestTurn, nextTurn, withinTolerance } from './turns';
+import { degrees, millimetres, nameOf, pieceName, pieces } from './wording';
+import { flipFor, flipIsFree } from './yields';
+
+/*
+ * Everything a person does to the pieces of a lay. A command gives a new document and says what it did, or refuses and
+ * says why. Locked pieces never move. Ids of new placements come from outside: this code has no randomness.
+ */
+
+export type Edit =
+  | { readonly document: LayDocument; readonly said: string; readonly refused?: undefined }
+  | { readonly refused: string; readonly document?: undefined; readonly said?: undefined };
+
+type Ids = readonly string[];
+
+/** Chosen placements with their panels, apart from the locked ones. */
+interface Chosen {
+  readonly free: readonly { readonly placement: LayPlacement; readonly panel: LayPanel }[];
+  readonly locked: number;
+}
+
+function chosen(document: LayDocument, book: PanelBook, ids: Ids): Chosen | { refused: string } {
+  const wanted = new Set(ids);
+  const all = document.placements.filter(({ id }) => wanted.has(id));
+  if (all.length === 0) return { refused: 'No piece is chosen.' };
+  const unlocked = all.filter(({ locked }) => !locked);
+  const free = unlocked.flatMap((placement) => {
+    const panel = panelOfPlacement(document, book, placement);
+    return panel ? [{ placement, panel }] : [];
+  });
+  if (free.length === 0)
+    return {
+      refused:
+        unlocked.length > 0
+          ? 'The outline of this piece is not known here. Put it back on the Rail.'
+          : all.length === 1
+            ? `${nameOf(document, book, all[0]!)} is locked. Unlock it first.`
+            : `All ${all.length} chosen pieces are locked. Unlock them first.`
+    };
+  return { free, locked: all.length - unlocked.length };
+}
+
+/** The document with some placements replaced. */
+function replaced(document: LayDocument, changed: readonly LayPlacement[]): LayDocument {
+  const byId = new Map(changed.map((placement) => [placement.id, placement]));
+  return { ...document, placements: document.placements.map((old) => byId.get(old.id) ?? old) };
+}
+
+/** 'Front (left) of Ada' or '4 pieces', with what stayed because it is locked. */
+function subject(document: LayDocument, book: PanelBook, { free, locked }: Chosen): string {
+  const what = free.length === 1 ? nameOf(document, book, free[0]!.placement) : pieces(free.length);
+  return locked > 0 ? `${what} (${locked} locked, left alone)` : what;
+}
+
+function boxOf(panel: LayPanel, placement: Placement): Box {
+  return boundingBox(placeOutline(panel.shape.cut, placement));
+}
+
+function middleOf(boxes: readonly Box[]): Point {
+  const minX = Math.min(...boxes.map((box) => box.minX));
+  const maxX = Math.max(...boxes.map((box) => box.maxX));
+  const minY = Math.min(...boxes.map((box) => box.minY));
+  const maxY = Math.max(...boxes.map((box) => box.maxY));
+  return { x: (minX + maxX) / 2, y: (minY + maxY) / 2 };
+}
+
+/** `next` moved so that the middle of its box lies at `middle`, on the grid. */
+function centred<T extends Placement>(panel: LayPanel, next: T, middle: Point): T {
+  const { x, y } = middleOf([boxOf(panel, next)]);
+  return { ...next, ...snapPlacement({ ...next, x: next.x + middle.x - x, y: next.y + middle.y - y }) };
+}
+
+/**
+ * Takes `piece` from the Rail and lays it with the middle of its box at `at`, at the first turn that it is allowed, with
+ * the hand that is needed. `id` names the new placement.
+ */
+export function placeFromRail(
+  document: LayDocument,
+  book: PanelBook,
+  piece: LoosePiece,
+  at: Point,
+  id: string
+): Edit {
+  const garment = document.garments.find((each) => each.id === piece.garment);
+  const panel = panelOf(book, garment, piece.panel);
+  if (!panel) return { refused: 'The outline of this piece is not known here.' };
+  const name = pieceName(panel, piece.hand, garment?.label);
+  const hangs = balance(document, book).loose.some(
+    (one) => one.garment === piece.garment && one.panel === piece.panel && one.hand === piece.hand
+  );
+  if (!hangs) return { refused: `${name} no longer hangs on the Rail.` };
+  if (document.placements.some((placement) => placement.id === id))
+    return { refused: `${name} is on the cloth already.` };
+  const placement = centred(
+    panel,
+    {
+      id,
+      panel: piece.panel,
+      garment: piece.garment,
+      x: 0,
+      y: 0,
+      turn: allowedTurns(panel, document.strip)?.[0] ?? 0,
+      flip: flipFor(piece.hand, panel, document.strip),
+      locked: false
+    },
+    at
+  );
+  return {
+    document: { ...document, placements: [...document.placements, placement] },
+    said: `${name} placed on the cloth.`
+  };
+}
+
+/** Moves the chosen pieces as one body by `dx` along the warp and `dy` across. */
+export function move(
+  document: LayDocument,
+  book: PanelBook,
+  ids: Ids,
+  dx: Millimetres,
+  dy: Millimetres
+): Edit {
+  const picked = chosen(document, book, ids);
+  if ('refused' in picked) return picked;
+  const moved = picked.free.map(({ placement }) => ({
+    ...placement,
+    ...snapPlacement({ ...placement, x: placement.x + dx, y: placement.y + dy })
+  }));
+  const parts = [
+    dx === 0 ? '' : `${millimetres(Math.abs(dx))} towards the ${dx > 0 ? 'end' : 'start'}`,
+    dy === 0 ? '' : `${millimetres(Math.abs(dy))} towards the ${dy > 0 ? 'far' : 'near'} selvedge`
+  ].filter((part) => part !== '');
+  if (parts.length === 0) return { refused: 'The pieces are where they were.' };
+  return {
+    document: replaced(document, moved),
+    said: `${subject(document, book, picked)} moved ${parts.join(' and ')}.`
+  };
+}
+
+/**
+ * Turns the chosen pieces to their next allowed turn, counter-clockwise (`step` 1) or clockwise (−1). When all turn by
+ * the same angle they turn as one body, else each about its own middle.
+ */
+export function turnBySteps(document: LayDocument, book: PanelBook, ids: Ids, step: 1 | -1): Edit {
+  const picked = chosen(document, book, ids);
+  if ('refused' in picked) return picked;
+  const { strip } = document;
+  const turns = picked.free.map(({ placement, panel }) => nextTurn(panel, strip, placement.turn, step));
+  const deltas = picked.free.map(({ placement }, i) => snapTurn(turns[i]! - placement.turn));
+  if (deltas.every((delta) => delta === 0))
+    return {
+      refused: `${subject(document, book, picked)} may lie only this way on this cloth.`
+    };
+  const together = deltas.every((delta) => delta === deltas[0]);
+  const whole = middleOf(picked.free.map(({ placement, panel }) => boxOf(panel, placement)));
+  const turned = picked.free.map(({ placement, panel }, i) => {
+    const next = { ...placement, turn: turns[i]! };
+    return together
+      ? { ...next, ...snapPlacement({ ...next, ...aboutPoint(placement, whole, deltas[0]!) }) }
+      : centred(panel, next, middleOf([boxOf(panel, placement)]));
+  });
+  return {
+    document: replaced(document, turned),
+    said: together
+      ? `${subject(document, book, picked)} turned by ${degrees(deltas[0]!)}.`
+      : `${subject(document, book, picked)} turned to their next allowed turns.`
+  };
+}
+
+/** Where `point` comes to lie when the table is turned by `turn` about `centre`. */
+function aboutPoint(point: Point, centre: Point, turn: Degrees): Point {
+  const [cos, sin] = cosSin(turn);
+  const [dx, dy] = [point.x - centre.x, point.y - centre.y];
+  return { x: centre.x + dx * cos - dy * sin, y: centre.y + dx * sin + dy * cos };
+}
+
+/** Turns each chosen piece by `by` about its own middle, never further than its grain tolerance allows. */
+export function turnFreely(document: LayDocument, book: PanelBook, ids: Ids, by: Degrees): Edit {
+  const picked = chosen(document, book, ids);
+  if ('refused' in picked) return picked;
+  const { strip } = document;
+  const turned = picked.free.map(({ placement, panel }) =>
+    centred(
+      panel,
+      { ...placement, turn: withinTolerance(panel, strip, placement.turn + by) },
+      middleOf([boxOf(panel, placement)])
+    )
+  );
+  if (turned.every((next, i) => next.turn === picked.free[i]!.placement.turn))
+    return {
+      refused: `${subject(document, book, picked)} can't turn further: the grain tolerance is ${degrees(
+        Math.min(...picked.free.map(({ panel }) => panel.grainTolerance))
+      )}.`
+    };
+  const first = turned[0]!;
+  const off = snapTurn(first.turn - nearestTurn(picked.free[0]!.panel, strip, first.turn));
+  return {
+    document: replaced(document, turned),
+    said:
+      turned.length === 1
+        ? `${subject(document, book, picked)} turned to ${degrees(first.turn)}, ${degrees(
+            Math.min(off, 360 - off)
+          )} off grain.`
+        : `${subject(document, book, picked)} turned within their grain tolerance.`
+  };
+}
+
+/**
+ * Flips each chosen piece over its grain line, where it lies. A flip changes the hand: it is refused where that hand is
+ * not needed, unless a mirrored copy serves as well (a symmetric piece, or cloth with both sides alike).
+ */
+export function flip(document: LayDocument, book: PanelBook, ids: Ids): Edit {
+  const picked = chosen(document, book, ids);
+  if ('refused' in picked) return picked;
+  const flipped = replaced(
+    document,
+    picked.free.map(({ placement, panel }) =>
+      centred(panel, { ...placement, flip: !placement.flip }, middleOf([boxOf(panel, placement)]))
+    )
+  );
+  if (!picked.free.every(({ panel }) => flipIsFree(panel, document.strip))) {
+    const surplus = (lay: LayDocument): number =>
+      balance(lay, book).surplus.reduce((sum, one) => sum + one.count, 0);
+    if (surplus(flipped) > surplus(document)) {
+      const [first] = picked.free;
+      const after = flipped.placements.find(({ id }) => id === first!.placement.id)!;
+      return {
+        refused:
+          picked.free.length === 1
+            ? `Flipped it would be ${nameOf(flipped, book, after)}, which is not needed any more.`
+            : 'Flipped, some of these pieces would be of a hand that is not needed any more.'
+      };
+    }
+  }
+  return {
+    document: flipped,
+    said:
+      picked.free.length === 1
+        ? `Flipped: now ${nameOf(
+            flipped,
+            book,
+            flipped.placements.find(({ id }) => id === picked.free[0]!.placement.id)!
+          )}.`
+        : `${subject(document, book, picked)} flipped.`
+  };
+}
+
+/** Exact figures for one piece; what is left out stays as it is. */
+export interface Exact {
+  /** Distance of the nearest cut edge from the zero end. */
+  readonly fromStart?: Millimetres;
+  /** Distance of the nearest cut edge from the near selvedge. */
+  readonly fromSelvedge?: Millimetres;
+  readonly turn?: Degrees;
+}
+
+/** What `setExact` would have to be given to change nothing. */
+export function exactOf(panel: LayPanel, placement: Placement): Required<Exact> {
+  const box = boxOf(panel, placement);
+  return { fromStart: box.minX, fromSelvedge: box.minY, turn: placement.turn };
+}
+
+/** Lays one piece at exact distances and an exact turn; a turn beyond the grain tolerance is refused. */
+export function setExact(document: LayDocument, book: PanelBook, id: string, exact: Exact): Edit {
+  const picked = chosen(document, book, [id]);
+  if ('refused' in picked) return picked;
+  const { placement, panel } = picked.free[0]!;
+  let next = placement;
+  if (exact.turn !== undefined) {
+    const turn = snapTurn(exact.turn);
+    if (withinTolerance(panel, document.strip, turn) !== turn) {
+      const nearest = nearestTurn(panel, document.strip, turn);
+      return {
+        refused: `${nameOf(document, book, placement)} may lie at ${(
+          allowedTurns(panel, document.strip) ?? [nearest]
+        )
+          .map((allowed) => degrees(allowed))
+          .join(', ')}, within ${degrees(panel.grainTolerance)}; got ${degrees(turn)}.`
+      };
+    }
+    next = centred(panel, { ...next, turn }, middleOf([boxOf(panel, placement)]));
+  }
+  const box = boxOf(panel, next);
+  next = {
+    ...next,
+    ...snapPlacement({
+      ...next,
+      x: next.x + (exact.fromStart === undefined ? 0 : exact.fromStart - box.minX),
+      y: next.y + (exact.fromSelvedge === undefined ? 0 : exact.fromSelvedge - box.minY)
+    })
+  };
+  const now = exactOf(panel, next);
+  return {
+    document: replaced(document, [next]),
+    said: `${nameOf(document, book, placement)} lies ${millimetres(now.fromStart)} from the zero end, ${millimetres(
+      now.fromSelvedge
+    )} from the near selvedge, turned ${degrees(now.turn)}.`
+  };
+}
+
+/** Locks or unlocks the chosen pieces. */
+export function setLocked(document: LayDocument, book: PanelBook, ids: Ids, locked: boolean): Edit {
+  const wanted = new Set(ids);
+  const changed = document.placements.filter((one) => wanted.has(one.id) && one.locked !== locked);
+  if (changed.length === 0) return { refused: `Nothing chosen is ${locked ? 'unlocked' : 'locked'}.` };
+  const what = changed.length === 1 ? nameOf(document, book, changed[0]!) : pieces(changed.length);
+  return {
+    document: replaced(
+      document,
+      changed.map((placement) => ({ ...placement, locked }))
+    ),
+    said: `${what} ${locked ? 'locked' : 'unlocked'}.`
+  };
+}
+
+/** Hangs the chosen pieces back on the Rail; locked ones stay. Works for pieces whose panel is not known, too. */
+export function toRail(document: LayDocument, book: PanelBook, ids: Ids): Edit {
+  const wanted = new Set(ids);
+  const all = document.placements.filter(({ id }) => wanted.has(id));
+  const taken = all.filter(({ locked }) => !locked);
+  if (all.length === 0) return { refused: 'No piece is chosen.' };
+  if (taken.length === 0) return { refused: `${pieces(all.length)} locked on the cloth. Unlock first.` };
+  const gone = new Set(taken.map(({ id }) => id));
+  const what = taken.length === 1 ? nameOf(document, book, taken[0]!) : pieces(taken.length);
+  return {
+    document: { ...document, placements: document.placements.filter(({ id }) => !gone.has(id)) },
+    said: `${what} back on the Rail.`
+  };
+}
+
+/** Ids of every placement of a garment. */
+export function placementsOf(document: LayDocument, garment: string): string[] {
+  return document.placements.filter((one) => one.garment === garment).map(({ id }) => id);
+}
+
+/**
+ * Lays the loose pieces of garment `to` as those of garment `from` lie, all moved along by the same length, past
+ * everything on the cloth. `newId` gives the id of each new placement.
+ */
+export function copyArrangement(
+  document: LayDocument,
+  book: PanelBook,
+  from: string,
+  to: string,
+  newId: () => string
+): Edit {
+  const labelOf = (id: string): string =>
+    document.garments.find((garment) => garment.id === id)?.label ?? 'the garment';
+  if (from === to) return { refused: 'Choose two different garments.' };
+  const source = document.placements.filter((one) => one.garment === from);
+  if (source.length === 0) return { refused: `No piece of ${labelOf(from)} is on the cloth yet.` };
+  const boxes = (of: readonly LayPlacement[]): Box[] =>
+    of.flatMap((placement) => {
+      const panel = panelOfPlacement(document, book, placement);
+      return panel ? [boxOf(panel, placement)] : [];
+    });
+  const start = Math.min(...boxes(source).map((box) => box.minX));
+  const past = Math.max(0, ...boxes(document.placements).map((box) => box.maxX));
+  const shift = past + document.strip.clearance - start;
+
+  const garment = document.garments.find((each) => each.id === to);
+  const placements = [...document.placements];
+  let laid = 0;
+  for (const placement of source) {
+    const original = panelOfPlacement(document, book, placement);
+    const panel = panelOf(book, garment, placement.panel);
+    if (!panel || !original) continue;
+    const before = balance({ ...document, placements }, book).surplus.length;
+    const copy = {
+      ...placement,
+      id: newId(),
+      garment: to,
+      locked: false,
+      ...snapPlacement({ ...placement, x: placement.x + shift })
+    };
+    // A copy that nothing asks for would be surplus: the piece is on the cloth already, or was never needed.
+    if (balance({ ...document, placements: [...placements, copy] }, book).surplus.length > before) continue;
+    placements.push(copy);
+    laid++;
+  }
+  if (laid === 0)
+    return { refused: `No loose piece of ${labelOf(to)} lies as one of ${labelOf(from)} does.` };
+  return {
+    document: { ...document, placements },
+    said: `${pieces(laid)} of ${labelOf(to)} laid as ${labelOf(from)}.`
+  };
+}

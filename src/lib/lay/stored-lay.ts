@@ -1,0 +1,122 @@
+import { z } from 'zod';
+import type { Strip } from '$lib/cloth/strip';
+import { LAY_SCHEMA, layDocumentSchema, type Garment, type LayDocument } from './document';
+import { needsOf } from './needs';
+import type { LayPanel, PanelBook } from './panel-book';
+
+/*
+ * The one door of lay documents: whatever was stored, posted or imported comes in through `openLayDocument`.
+ */
+
+/** Brings a document from one schema number to the next. Pure. */
+export type Upgrade = (document: Readonly<Record<string, unknown>>) => Record<string, unknown>;
+
+/** `upgrades.get(n)` brings schema n to n + 1. Each gets a test with a literal document before and after. */
+const upgrades: ReadonlyMap<number, Upgrade> = new Map();
+
+/** A document that does not fit, with what was got and what is expected. */
+export class UnreadableDocument extends Error {
+  constructor(
+    message: string,
+    readonly issues: readonly { readonly path: readonly PropertyKey[]; readonly message: string }[] = []
+  ) {
+    super(message);
+    this.name = 'UnreadableDocument';
+  }
+}
+
+/**
+ * `json` brought to schema `newest` by the numbered upgrades. Throws UnreadableDocument for what is no object, has no
+ * schema number, is newer than `newest` or older than the first upgrade.
+ */
+export function upgraded(
+  json: unknown,
+  newest: number,
+  steps: ReadonlyMap<number, Upgrade>
+): Readonly<Record<string, unknown>> {
+  if (typeof json !== 'object' || json === null || Array.isArray(json))
+    throw new UnreadableDocument(
+      `Expected a lay document, got ${Array.isArray(json) ? 'a list' : json === null ? 'null' : typeof json}.`
+    );
+  let document = json as Readonly<Record<string, unknown>>;
+  const got = document.schema;
+  if (typeof got !== 'number' || !Number.isInteger(got) || got < 1)
+    throw new UnreadableDocument(`Expected a schema number of 1 to ${newest}, got ${JSON.stringify(got)}.`);
+  if (got > newest)
+    throw new UnreadableDocument(
+      `Expected schema ${newest} or older, got ${got}: it was made by a newer version of the product.`
+    );
+  for (let number = got; number < newest; number++) {
+    const step = steps.get(number);
+    if (!step) throw new UnreadableDocument(`Schema ${number} can no longer be read.`);
+    document = { ...step(document), schema: number + 1 };
+  }
+  return document;
+}
+
+const caps = { garments: 500, needs: 5000, placements: 5000 } as const;
+
+/**
+ * The lay document in `json`, upgraded, validated, capped, every number on its grid. Throws UnreadableDocument with
+ * what was got and what is expected.
+ */
+export function openLayDocument(json: unknown): LayDocument {
+  const document = upgraded(json, LAY_SCHEMA, upgrades);
+  for (const [list, most] of Object.entries(caps)) {
+    const got = document[list];
+    if (Array.isArray(got) && got.length > most)
+      throw new UnreadableDocument(`Expected at most ${most} ${list}, got ${got.length}.`);
+  }
+  const parsed = layDocumentSchema.safeParse(document);
+  if (!parsed.success)
+    throw new UnreadableDocument(z.prettifyError(parsed.error), parsed.error.issues.slice(0, 50));
+  refuseContradictions(parsed.data);
+  return parsed.data;
+}
+
+/** What a schema can't say: ids stand once, and the spread covers the usable width. */
+function refuseContradictions({ strip, garments, placements }: LayDocument): void {
+  for (const [what, items] of [
+    ['garment', garments],
+    ['placement', placements]
+  ] as const) {
+    const seen = new Set<string>();
+    for (const { id } of items) {
+      if (seen.has(id)) throw new UnreadableDocument(`Expected every ${what} once, got ${id} twice.`);
+      seen.add(id);
+    }
+  }
+  let edge = 0;
+  for (const zone of strip.spread) {
+    if (zone.from !== edge || zone.to <= zone.from)
+      throw new UnreadableDocument(
+        `Expected the zones of the spread side by side from 0 to ${strip.usableWidth} mm, got one from ${zone.from} to ${zone.to} mm.`
+      );
+    edge = zone.to;
+  }
+  if (edge !== strip.usableWidth)
+    throw new UnreadableDocument(
+      `Expected the spread to end at the usable width of ${strip.usableWidth} mm, got ${edge} mm.`
+    );
+  if (strip.usableWidth > strip.fullWidth)
+    throw new UnreadableDocument(
+      `Expected a usable width of at most the full width of ${strip.fullWidth} mm, got ${strip.usableWidth} mm.`
+    );
+}
+
+/** A lay with everything still on the Rail. `takes`: see `needsOf`. */
+export function newLay(from: {
+  readonly strip: Strip;
+  readonly garments: readonly Garment[];
+  readonly book: PanelBook;
+  readonly takes?: (garment: Garment, panel: LayPanel) => boolean;
+}): LayDocument {
+  return {
+    schema: LAY_SCHEMA,
+    strip: from.strip,
+    garments: [...from.garments],
+    needs: needsOf(from.garments, from.book, from.strip, from.takes),
+    placements: [],
+    rules: { matchGroups: [], matchTolerance: 1 }
+  };
+}
