@@ -45,6 +45,7 @@ export default defineConfig({
           name: 'server',
           environment: 'node',
           include: ['tests/server/**/*.test.ts'],
+          globalSetup: ['tests/server/build-workers.ts'],
           testTimeout: 60_000,
           hookTimeout: 120_000,
           pool: 'forks'

@@ -5,12 +5,12 @@ import { build } from 'vite';
 
 const lib = fileURLToPath(new URL('./src/lib', import.meta.url));
 
-/** Every `*.worker.ts` below src/lib. */
+/** Every `*.worker.ts` below src/lib, and the commands (`npm run backup`), which run without the application's server. */
 async function workerEntries() {
   const files = await readdir(lib, { recursive: true });
   return Object.fromEntries(
     files
-      .filter((file) => file.endsWith('.worker.ts'))
+      .filter((file) => file.endsWith('.worker.ts') || path.dirname(file) === path.join('server', 'cli'))
       .map((file) => [path.basename(file, '.ts'), path.join(lib, file)])
   );
 }

@@ -170,7 +170,7 @@ export function cookieJar(initial: Record<string, string> = {}): Cookies & {
     get: (name) => held.get(name),
     getAll: () => [...held].map(([name, value]) => ({ name, value })),
     set(name, value, given) {
-      options.set(name, given);
+      options.set(name, { ...given });
       if (value === '' || given.maxAge === 0) held.delete(name);
       else held.set(name, value);
     },

@@ -14,12 +14,21 @@ import type { Scope } from './scope';
  * back. Without a studio: to the list of studios. Without the permission: 403.
  */
 export function allow(event: Pick<RequestEvent, 'locals' | 'url'>, permission: Permission): Scope {
-  const { person, scope } = event.locals;
-  if (!person.user)
-    redirect(303, `/sign-in?next=${encodeURIComponent(event.url.pathname + event.url.search)}`);
+  signedIn(event);
+  const { scope } = event.locals;
   if (!scope) redirect(303, '/studios');
   if (!may(scope.role, permission)) error(403, 'Your role in this studio does not include this.');
   return scope;
+}
+
+/** The person, studio or not: for pages that belong to the person alone. Signed out: to the sign-in page and back. */
+export function signedIn(
+  event: Pick<RequestEvent, 'locals' | 'url'>
+): Extract<App.Locals['person'], { user: { id: string } }> {
+  const { person } = event.locals;
+  if (!person.user)
+    redirect(303, `/sign-in?next=${encodeURIComponent(event.url.pathname + event.url.search)}`);
+  return person;
 }
 
 /** Runs a repository call of a page: a refusal becomes an error page with the same words. */

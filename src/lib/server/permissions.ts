@@ -8,6 +8,8 @@ export type Role = (typeof roles)[number];
 
 /** What a person may be allowed to do, named as 'noun: verb'. */
 const table = {
+  /** To be there at all: what every member has, whatever the role. */
+  'studio: enter': ['owner', 'patternMaker', 'cutter'],
   'people: manage': ['owner'],
   'studio: manage': ['owner'],
   'prices: see': ['owner', 'patternMaker'],

@@ -250,3 +250,14 @@ export async function workIn(publicId: string, studioId: string): Promise<void> 
 export async function sweep(): Promise<void> {
   await lucia.deleteExpiredSessions();
 }
+
+/** Whether a session still goes on: for what stays open longer than a request. */
+export async function isOpen(publicId: string, now = Date.now()): Promise<boolean> {
+  const row = await database()('sessions')
+    .where({ public_id: publicId })
+    .where('expires_at', '>', now)
+    .where('created_at', '>', now - absoluteLimit)
+    .where('last_used_at', '>', now - idleLimit)
+    .first('public_id');
+  return row !== undefined;
+}

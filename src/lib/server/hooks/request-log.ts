@@ -5,10 +5,13 @@ import { log } from '$lib/server/log';
 /** Gives each request its id, and one line of the log at its end. Paths may hold one-time tokens: the route is logged. */
 export const requestLog: Handle = async ({ event, resolve }) => {
   const started = performance.now();
-  event.locals.requestId = newId();
-  event.locals.person = { user: null, session: null };
-  event.locals.scope = null;
-  event.locals.studio = null;
+  const nobody: App.Locals = {
+    requestId: newId(),
+    person: { user: null, session: null },
+    scope: null,
+    studio: null
+  };
+  Object.assign(event.locals, nobody);
   const response = await resolve(event);
   response.headers.set('x-request-id', event.locals.requestId);
   log.info({
