@@ -1,0 +1,35 @@
+import type { Strip } from '$lib/cloth/strip';
+import type { Box } from '$lib/geometry/point';
+import type { Millimetres } from '$lib/units/measure';
+
+/** The four sides of the strip: the cloth's start and end, the near and the far selvedge. */
+export const sides = ['start', 'end', 'near', 'far'] as const;
+export type StripSide = (typeof sides)[number];
+
+/** How far a box hangs over each side; 0 where it does not. An open length has no end. */
+export function overhang(box: Box, strip: Strip): Readonly<Record<StripSide, Millimetres>> {
+  return {
+    start: Math.max(0, -box.minX),
+    end: strip.length === null ? 0 : Math.max(0, box.maxX - strip.length),
+    near: Math.max(0, -box.minY),
+    far: Math.max(0, box.maxY - strip.usableWidth)
+  };
+}
+
+/** How far a box is from each side, negative where it hangs over; Infinity at the end of an open length. */
+export function roomTo(box: Box, strip: Strip): Readonly<Record<StripSide, Millimetres>> {
+  return {
+    start: box.minX,
+    end: (strip.length ?? Infinity) - box.maxX,
+    near: box.minY,
+    far: strip.usableWidth - box.maxY
+  };
+}
+
+/** A side as the person reads it. */
+export const sideName: Readonly<Record<StripSide, string>> = {
+  start: 'the start of the cloth',
+  end: 'the end of the cloth',
+  near: 'the near selvedge',
+  far: 'the far selvedge'
+};

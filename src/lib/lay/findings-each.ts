@@ -1,0 +1,180 @@
+import { placeOutline } from '$lib/geometry/placement';
+import type { Outline, Point } from '$lib/geometry/point';
+import { contains, growBox } from '$lib/geometry/polygon';
+import { outlineOf } from '$lib/geometry/prepared';
+import { pointSegmentSquared } from '$lib/geometry/segment';
+import { TOUCHING } from '$lib/geometry/tolerance';
+import type { Millimetres } from '$lib/units/measure';
+import { overhang, sideName, type StripSide } from './borders';
+import type { LayDocument } from './document';
+import { CLEARANCE_SLACK } from './findings-between';
+import type { PanelBook } from './panel-book';
+import type { PlacedPiece } from './placed';
+import { againstNap, beyondTolerance, offGrain, way } from './turns';
+import type { Finding, FindingKind } from './verdict';
+import { degrees, millimetres, nameOf } from './wording';
+
+/** What is wrong with a piece by itself: over a border, off grain, against the nap, on a flaw. */
+export function findingsEach(
+  document: LayDocument,
+  book: PanelBook,
+  placed: readonly PlacedPiece[]
+): Finding[] {
+  return [
+    ...placed.flatMap((piece) => [
+      ...outside(document, book, piece),
+      ...turned(document, book, piece),
+      ...onFlaws(document, book, piece)
+    ]),
+    ...unlikeTheirGarment(document, book, placed)
+  ];
+}
+
+/** A finding of one piece that stops a release. */
+function stops(
+  piece: PlacedPiece,
+  kind: FindingKind,
+  measure: Finding['measure'],
+  place: Point,
+  message: string
+): Finding {
+  return {
+    kind,
+    severity: 'stops',
+    placements: [piece.placement.id],
+    subject: null,
+    measure,
+    place,
+    region: [],
+    area: null,
+    box: piece.outline.box,
+    message
+  };
+}
+
+function outside(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
+  const over = overhang(piece.outline.box, document.strip);
+  return (Object.keys(over) as StripSide[])
+    .filter((side) => over[side] > TOUCHING)
+    .map((side) =>
+      stops(
+        piece,
+        side === 'near' || side === 'far' ? 'outside-width' : 'outside-length',
+        { value: over[side], unit: 'mm' },
+        outermost(outlineOf(piece.outline), side),
+        `${nameOf(document, book, piece.placement)} hangs ${millimetres(over[side])} over ${sideName[side]}.`
+      )
+    );
+}
+
+/** The place of an outline that reaches farthest to a side. */
+function outermost(outline: Outline, side: StripSide): Point {
+  const reach = {
+    start: (p: Point) => -p.x,
+    end: (p: Point) => p.x,
+    near: (p: Point) => -p.y,
+    far: (p: Point) => p.y
+  }[side];
+  return outline.reduce((best, point) => (reach(point) > reach(best) ? point : best));
+}
+
+function turned(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
+  const { panel, placement, outline } = piece;
+  const name = nameOf(document, book, placement);
+  const findings: Finding[] = [];
+  if (beyondTolerance(panel, placement.turn)) {
+    const off = offGrain(panel, placement.turn);
+    findings.push(
+      stops(
+        piece,
+        'off-grain',
+        { value: off, unit: 'degrees' },
+        outline.inner,
+        `${name} lies ${degrees(off)} off grain; its tolerance is ${degrees(panel.grainTolerance)}.`
+      )
+    );
+  }
+  if (againstNap(panel, document.strip, placement.turn))
+    findings.push(
+      stops(
+        piece,
+        'against-nap',
+        null,
+        outline.inner,
+        document.strip.nap === 'oneWay'
+          ? `${name} lies against the nap.`
+          : `${name} lies the wrong way round: its panel asks for one way.`
+      )
+    );
+  return findings;
+}
+
+/** On cloth where each garment runs one way: the fewer pieces of a garment that run the other way. */
+function unlikeTheirGarment(
+  document: LayDocument,
+  book: PanelBook,
+  placed: readonly PlacedPiece[]
+): Finding[] {
+  if (document.strip.nap !== 'garmentWay') return [];
+  return document.garments.flatMap((garment) => {
+    const own = placed.filter(({ placement }) => placement.garment === garment.id);
+    const runs = (sense: 1 | -1): PlacedPiece[] =>
+      own.filter(({ panel, placement }) => way(panel.turns, placement.turn) === sense);
+    const [along, against] = [runs(1), runs(-1)];
+    const fewer = along.length < against.length ? along : against;
+    if (along.length === 0 || against.length === 0) return [];
+    return fewer.map((piece) =>
+      stops(
+        piece,
+        'against-nap',
+        null,
+        piece.outline.inner,
+        `${nameOf(document, book, piece.placement)} runs the other way than the rest of its garment.`
+      )
+    );
+  });
+}
+
+function onFlaws(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
+  const { flaws, clearance } = document.strip;
+  return flaws.flatMap((flaw) => {
+    const needed = flaw.radius + clearance;
+    const near = growBox(piece.outline.box, needed);
+    if (flaw.x < near.minX || flaw.x > near.maxX || flaw.y < near.minY || flaw.y > near.maxY) return [];
+    const room = roomAround(piece, flaw);
+    if (room >= needed - CLEARANCE_SLACK) return [];
+    const note = flaw.note === '' ? '' : ` (${flaw.note})`;
+    return [
+      stops(
+        piece,
+        'flaw',
+        { value: needed - room, unit: 'mm' },
+        { x: flaw.x, y: flaw.y },
+        room < flaw.radius
+          ? `${nameOf(document, book, piece.placement)} lies on a flaw of the cloth${note}.`
+          : `${nameOf(document, book, piece.placement)} lies ${millimetres(room - flaw.radius)} from a flaw of the cloth${note}, nearer than the clearance of ${millimetres(clearance)}.`
+      )
+    ];
+  });
+}
+
+/** How far `point` is from the cloth of a piece, negative inside it; a cut-out is not of the piece. */
+function roomAround({ panel, placement, outline }: PlacedPiece, point: Point): Millimetres {
+  const cut = outlineOf(outline);
+  const gap = toOutline(cut, point);
+  if (!contains(cut, point)) return gap;
+  for (const hole of panel.shape.cutOuts) {
+    const placedHole = placeOutline(hole, placement);
+    if (contains(placedHole, point)) return Math.min(gap, toOutline(placedHole, point));
+  }
+  return -gap;
+}
+
+function toOutline(outline: Outline, { x, y }: Point): Millimetres {
+  let least = Infinity;
+  outline.forEach((a, i) => {
+    const b = outline[(i + 1) % outline.length]!;
+    least = Math.min(least, pointSegmentSquared(x, y, a.x, a.y, b.x, b.y));
+  });
+  return Math.sqrt(least);
+}
