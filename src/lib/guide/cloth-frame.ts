@@ -1,0 +1,179 @@
+import { sideUp, type Strip } from '$lib/cloth/strip';
+import type { Box } from '$lib/geometry/point';
+import type { Millimetres } from '$lib/units/measure';
+import { formatLength, type LengthUnit } from '$lib/units/length';
+import { line, pen, words, type Mark } from './drawing';
+import type { LaidPiece } from './laid-piece';
+
+/*
+ * The cloth around the pieces: selvedges or fold, zero and end line, and its words.
+ */
+
+/** The cloth of a lay as the guide shows it. */
+export interface ClothFrame {
+  /** The edges of the usable width: y = 0, and the far one. */
+  readonly usableWidth: Millimetres;
+  /** Where the lay ends: the greatest x of its pieces. */
+  readonly lengthUsed: Millimetres;
+  /** The cloth itself: full width, ends included. */
+  readonly cloth: Box;
+  /** The cloth, and whatever hangs over it. */
+  readonly extent: Box;
+  readonly near: 'fold' | 'selvedge';
+  readonly far: 'fold' | 'selvedge';
+}
+
+/** The frame of a lay. A fold has no margin beside it; what the full width is wider is shared by the selvedges. */
+export function clothFrame(strip: Strip, pieces: readonly LaidPiece[], lengthUsed: Millimetres): ClothFrame {
+  const near = strip.spread.some((zone) => zone.fold === 'near') ? 'fold' : 'selvedge';
+  const far = strip.spread.some((zone) => zone.fold === 'far') ? 'fold' : 'selvedge';
+  const spare = Math.max(0, strip.fullWidth - strip.usableWidth);
+  const selvedges = Number(near === 'selvedge') + Number(far === 'selvedge');
+  const margin = selvedges > 0 ? spare / selvedges : 0;
+  const cloth = {
+    minX: -strip.endAllowance.start,
+    maxX: Math.max(lengthUsed, 1) + strip.endAllowance.end,
+    minY: near === 'fold' ? 0 : -margin,
+    maxY: strip.usableWidth + (far === 'fold' ? 0 : margin)
+  };
+  return {
+    usableWidth: strip.usableWidth,
+    lengthUsed,
+    cloth,
+    extent: pieces.reduce(
+      (all, { box }) => ({
+        minX: Math.min(all.minX, box.minX),
+        minY: Math.min(all.minY, box.minY),
+        maxX: Math.max(all.maxX, box.maxX),
+        maxY: Math.max(all.maxY, box.maxY)
+      }),
+      cloth
+    ),
+    near,
+    far
+  };
+}
+
+export const EDGE_PEN = pen(0.35);
+const OUTER_PEN = pen(0.25, [6, 3]);
+
+/** How far apart the words and the numbers along an edge stand, so that a small sheet still shows one. */
+const WORDS_STEP: Millimetres = 400;
+
+/** The frame's lines, ticks and words, in cloth coordinates. */
+export function drawFrame(frame: ClothFrame, unit: LengthUnit): Mark[] {
+  const { cloth, usableWidth, lengthUsed } = frame;
+  const across = (x: Millimetres, withPen = EDGE_PEN): Mark =>
+    line(
+      [
+        { x, y: cloth.minY },
+        { x, y: cloth.maxY }
+      ],
+      withPen
+    );
+  const along = (y: Millimetres, withPen = EDGE_PEN): Mark =>
+    line(
+      [
+        { x: cloth.minX, y },
+        { x: cloth.maxX, y }
+      ],
+      withPen
+    );
+  const marks: Mark[] = [along(0), along(usableWidth), across(0), across(lengthUsed)];
+  if (cloth.minY < 0) marks.push(along(cloth.minY, OUTER_PEN));
+  if (cloth.maxY > usableWidth) marks.push(along(cloth.maxY, OUTER_PEN));
+  if (cloth.minX < 0) marks.push(across(cloth.minX, OUTER_PEN));
+  if (cloth.maxX > lengthUsed) marks.push(across(cloth.maxX, OUTER_PEN));
+  marks.push(...tape(frame, unit));
+  for (let x = WORDS_STEP / 4; x < lengthUsed; x += WORDS_STEP) {
+    marks.push(edgeWords({ x, y: 0 }, `near ${frame.near}`, 0, frame.near === 'fold' ? 0 : -cloth.minY, -1));
+    marks.push(edgeWords({ x, y: usableWidth }, `far ${frame.far}`, 0, cloth.maxY - usableWidth, 1));
+  }
+  for (let y = WORDS_STEP / 4; y < usableWidth; y += WORDS_STEP) {
+    marks.push(edgeWords({ x: 0, y }, 'zero line', 90, -cloth.minX, 1));
+    marks.push(
+      edgeWords(
+        { x: lengthUsed, y },
+        `end line, ${formatLength(lengthUsed, unit, { decimals: 1 })}`,
+        90,
+        cloth.maxX - lengthUsed,
+        -1
+      )
+    );
+  }
+  return marks;
+}
+
+/**
+ * Words along an edge, outside it (`out` tells on which side of its reading direction) where `room` allows, just
+ * inside it otherwise.
+ */
+function edgeWords(
+  at: { x: number; y: number },
+  text: string,
+  turn: 0 | 90,
+  room: number,
+  out: 1 | -1
+): Mark {
+  const size = 3.6;
+  const above = room >= 6 ? out : -out;
+  const off = above > 0 ? 1.4 : -1.4 - size * 0.7;
+  return turn === 0
+    ? words({ x: at.x, y: at.y + off }, text, size)
+    : words({ x: at.x - off, y: at.y }, text, size, { turn });
+}
+
+/** A tape along both edges of the usable width: a tick each 10 cm with its number, 4 in for a studio in inches. */
+function tape(frame: ClothFrame, unit: LengthUnit): Mark[] {
+  const step = unit === 'cm' ? 100 : 101.6;
+  const marks: Mark[] = [];
+  const thin = pen(0.2);
+  for (let i = 0; i * step <= frame.lengthUsed + 1e-6; i++) {
+    const x = i * step;
+    for (const [y, into] of [
+      [0, 3],
+      [frame.usableWidth, -3]
+    ] as const)
+      marks.push(
+        line(
+          [
+            { x, y },
+            { x, y: y + into }
+          ],
+          thin
+        )
+      );
+    if (i > 0 && (i * step) % (2 * step) < 1e-6)
+      marks.push(words({ x: x + 0.8, y: 0.8 }, `${unit === 'cm' ? i * 10 : i * 4} ${unit}`, 2.6));
+  }
+  return marks;
+}
+
+/** Which side looks up, in words. */
+export function sideUpWords(strip: Strip): string {
+  return strip.sidesAlike ? 'both sides alike' : `${sideUp(strip)} side up`;
+}
+
+/** Plies on the table, all zones' deepest. */
+export function plies(strip: Strip): number {
+  return Math.max(...strip.spread.map((zone) => zone.layers.length));
+}
+
+/** How the cloth lies, in words: 'open, one ply'. */
+export function spreadWords(strip: Strip): string {
+  const count = plies(strip);
+  const folded = strip.spread.some((zone) => zone.fold !== 'none');
+  if (folded) return strip.spread.length > 1 ? 'partly folded lengthwise' : 'folded lengthwise';
+  if (count === 1) return 'open, single ply';
+  const layers = strip.spread[0]!.layers;
+  const facing = layers.some((layer) => layer.sideUp !== layers[0]!.sideUp);
+  return facing ? `${count} plies face to face` : `${count} plies, all facing the same way`;
+}
+
+/** Whether and which way the nap runs on the top ply: along the warp arrow, against it, or not at all. */
+export function napWords(strip: Strip): string {
+  if (strip.nap === 'none') return 'no nap';
+  const way =
+    strip.spread[0]!.layers[0]!.nap === 'along' ? 'runs with the warp arrow' : 'runs against the warp arrow';
+  return strip.nap === 'oneWay' ? `one way, ${way}` : `one way for each garment, ${way}`;
+}

@@ -1,0 +1,238 @@
+import { formatDecimal, formatLength } from '$lib/units/length';
+import type { ClothFrame } from './cloth-frame';
+import { DeskPage, setTable, type Desk } from './desk-page';
+import {
+  line,
+  pen,
+  rectangle,
+  ring,
+  surface,
+  words,
+  wrapText,
+  type Lettering,
+  type Mark,
+  type Page
+} from './drawing';
+import type { GuideInput } from './guide-input';
+import type { LaidPiece, LonePanel } from './laid-piece';
+import { handWords } from './piece-drawing';
+import { identity, notice } from './ticket';
+import { groups, printed, TAPED_UP_LIMIT, type TapedUpChecks, type Tiling } from './tiling';
+
+/*
+ * How the sheets go together: a map, and what a tape must read when they are taped up.
+ */
+
+/** A measured length on paper: millimetres, and inches for a studio that reads them. */
+function measured(mm: number, input: GuideInput): string {
+  const shown = `${formatDecimal(mm, 1, true)} mm`;
+  return input.lengthUnit === 'in' ? `${shown} (${formatLength(mm, 'in')})` : shown;
+}
+
+/** The map of the sheets of the cloth. */
+export function drawMap(
+  input: GuideInput,
+  frame: ClothFrame,
+  pieces: readonly LaidPiece[],
+  tiling: Tiling,
+  checks: TapedUpChecks,
+  desk: Desk,
+  lettering: Lettering
+): Page {
+  const page = new DeskPage(desk, 'Map of the sheets', lettering);
+  page.title('Map of the sheets', identity(input));
+  const low = page.foot + 46;
+  const all = tiling.tiles.map((tile) => tile.window);
+  const box = {
+    minX: Math.min(...all.map((w) => w.minX)),
+    minY: Math.min(...all.map((w) => w.minY)),
+    maxX: Math.max(...all.map((w) => w.maxX)),
+    maxY: Math.max(...all.map((w) => w.maxY))
+  };
+  const scale = Math.min(page.width / (box.maxX - box.minX), (page.top - low) / (box.maxY - box.minY));
+  const bottom = page.top - (box.maxY - box.minY) * scale;
+  const at = (x: number, y: number) => ({
+    x: page.left + (x - box.minX) * scale,
+    y: bottom + (y - box.minY) * scale
+  });
+  page.marks.push(...mapMarks(frame, pieces, tiling, checks, at, scale));
+  page.top = bottom - 5;
+  explain(page, input, frame, tiling, checks);
+  return page.done(notice(input));
+}
+
+function mapMarks(
+  frame: ClothFrame,
+  pieces: readonly LaidPiece[],
+  tiling: Tiling,
+  checks: TapedUpChecks,
+  at: (x: number, y: number) => { x: number; y: number },
+  scale: number
+): Mark[] {
+  const marks: Mark[] = [];
+  for (const piece of pieces) {
+    const holes = piece.cutOuts.map((hole) => hole.map((p) => at(p.x, p.y)));
+    marks.push(surface([piece.cut.map((p) => at(p.x, p.y)), ...holes], 0.9));
+  }
+  const { cloth } = frame;
+  const a = at(cloth.minX, cloth.minY);
+  const b = at(cloth.maxX, cloth.maxY);
+  marks.push(line(rectangle({ minX: a.x, minY: a.y, maxX: b.x, maxY: b.y }), pen(0.2, [1.5, 1]), true));
+  for (const tile of tiling.tiles) {
+    const w = tile.window;
+    const low = at(w.minX, w.minY);
+    // Up to where the next sheet takes over, so that the map shows one line for a seam.
+    const high = at(
+      tile.column === tiling.columns - 1 ? w.maxX : w.minX + tiling.step.x,
+      tile.row === tiling.rows - 1 ? w.maxY : w.minY + tiling.step.y
+    );
+    const box = { minX: low.x, minY: low.y, maxX: high.x, maxY: high.y };
+    marks.push(line(rectangle(box), tile.blank ? pen(0.15, [0.6, 1.2]) : pen(0.3), true));
+    if (tile.blank) continue;
+    const size = Math.min((box.maxY - box.minY) * 0.5, (box.maxX - box.minX) / (tile.label.length * 0.75), 8);
+    marks.push(
+      words({ x: (box.minX + box.maxX) / 2, y: (box.minY + box.maxY) / 2 - size * 0.35 }, tile.label, size, {
+        align: 'middle',
+        weight: 'bold'
+      })
+    );
+  }
+  for (const { name, at: target } of checks.targets) {
+    const place = at(target.x, target.y);
+    const left = name === 'A' || name === 'D';
+    marks.push(ring(place, Math.min(1.4, 8 * scale), pen(0.35)));
+    marks.push(
+      words({ x: place.x + (left ? 2.2 : -2.2), y: place.y - 1.4 }, name, 4, {
+        weight: 'bold',
+        align: left ? 'start' : 'end'
+      })
+    );
+  }
+  return marks;
+}
+
+function explain(
+  page: DeskPage,
+  input: GuideInput,
+  frame: ClothFrame,
+  tiling: Tiling,
+  checks: TapedUpChecks
+): void {
+  const shown = printed(tiling).length;
+  const left = tiling.tiles.length - shown;
+  const { overlap } = tiling.rules;
+  const islands = groups(tiling).length;
+  const half = page.width * 0.46;
+  let top = page.top;
+  const put = (text: string, size: number, weight: 'regular' | 'bold' = 'regular'): void => {
+    for (const one of wrapText(text, size, half, weight, page.lettering)) {
+      page.put(one, page.left, top - size * 0.7, size, { weight });
+      top -= size * 1.3;
+    }
+    top -= 1.2;
+  };
+  put(
+    `${shown} ${shown === 1 ? 'sheet' : 'sheets'}${left > 0 ? `, ${left} blank ones left out (dotted)` : ''}`,
+    4.6,
+    'bold'
+  );
+  if (shown > 1)
+    put(
+      `Row by row from the near ${frame.near}, column by column from the zero line. Trim a sheet’s left and lower band off ` +
+        `along its window where it has a neighbour there, lay it over the neighbour’s edge by ${formatDecimal(overlap, 1)} mm ` +
+        'so that the rings and crosses meet, and tape it.',
+      3.5
+    );
+  if (islands > 1)
+    put(
+      `The sheets make ${islands} groups that don’t touch: place each by the distances printed at its left edge.`,
+      3.5,
+      'bold'
+    );
+  tapedUp(page, input, checks);
+}
+
+/** The table of the four checks, on the right half. */
+function tapedUp(page: DeskPage, input: GuideInput, { checks }: TapedUpChecks): void {
+  const x = page.left + page.width * 0.52;
+  let y = page.top - 3.4;
+  page.put('Taped up, a tape must read', x, y, 4.6, { weight: 'bold' });
+  y -= 6.8;
+  for (const check of checks) {
+    page.put(`${check.from} – ${check.to}`, x, y, 4.2, { weight: 'bold' });
+    page.put(check.name, x + 16, y, 3.8);
+    page.put(measured(check.length, input), page.right, y, 4.6, { weight: 'bold', align: 'end' });
+    y -= 6;
+  }
+  for (const text of wrapText(
+    `More than ${TAPED_UP_LIMIT} mm off in any of them: do not cut. Take the joins apart, or print again at 100 %.`,
+    3.6,
+    page.right - x,
+    'bold',
+    page.lettering
+  )) {
+    page.put(text, x, y, 3.6, { weight: 'bold' });
+    y -= 4.8;
+  }
+}
+
+/** One panel of a panels-only guide with its sheets. */
+export interface PanelSheets {
+  readonly panel: LonePanel;
+  readonly tiling: Tiling;
+  readonly checks: TapedUpChecks;
+}
+
+/** The list of panels with their sheets and checks. */
+export function drawPanelList(
+  input: GuideInput,
+  panels: readonly PanelSheets[],
+  desk: Desk,
+  lettering: Lettering
+): Page[] {
+  const pages: Page[] = [];
+  const begin = (): DeskPage => {
+    const page = new DeskPage(desk, 'Panels', lettering);
+    page.title('Panels and their sheets', identity(input));
+    return page;
+  };
+  const first = begin();
+  const rest = first.width - 12 - 16 - 4 * 24 - 34;
+  const last = setTable(
+    first,
+    [
+      { word: 'no.', width: 12, align: 'end', weight: 'bold' },
+      { word: 'panel', width: rest * 0.55, align: 'start', weight: 'bold' },
+      { word: 'for', width: rest * 0.45, align: 'start' },
+      { word: 'pieces', width: 16, align: 'end', weight: 'bold' },
+      { word: 'sheets', width: 34, align: 'end' },
+      { word: 'A – B, mm', width: 24, align: 'end' },
+      { word: 'A – D, mm', width: 24, align: 'end' },
+      { word: 'A – C, mm', width: 24, align: 'end' },
+      { word: 'B – D, mm', width: 24, align: 'end' }
+    ],
+    panels.map(({ panel, tiling, checks }) => {
+      const shown = printed(tiling).length;
+      return [
+        String(panel.piece.number),
+        [panel.piece.panel, handWords(panel.piece.hand)].filter(Boolean).join(', '),
+        panel.cuts.map(({ garment, copies }) => (copies > 1 ? `${garment} × ${copies}` : garment)).join(', '),
+        String(panel.piece.copies),
+        shown === 1 ? '1' : `${shown}, ${tiling.rows} × ${tiling.columns}`,
+        ...checks.checks.map((check) => formatDecimal(check.length, 1, true))
+      ];
+    }),
+    (full) => {
+      pages.push(full.done(notice(input)));
+      return begin();
+    }
+  );
+  last.put(
+    `A to D are the rings in the corners of a panel’s sheets. More than ${TAPED_UP_LIMIT} mm off in any of them: do not cut.`,
+    last.left,
+    last.top - 6,
+    3.6,
+    { weight: 'bold', room: last.width }
+  );
+  return [...pages, last.done(notice(input))];
+}

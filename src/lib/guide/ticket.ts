@@ -1,0 +1,341 @@
+import { create } from 'qrcode';
+import type { Box } from '$lib/geometry/point';
+import { needHands } from '$lib/lay/document';
+import { formatDecimal, formatLength } from '$lib/units/length';
+import { napWords, plies, sideUpWords, spreadWords, type ClothFrame } from './cloth-frame';
+import { DeskPage, setTable, type Desk } from './desk-page';
+import {
+  line,
+  pen,
+  rectangle,
+  surface,
+  words,
+  wrapText,
+  type Lettering,
+  type Mark,
+  type Page
+} from './drawing';
+import type { GuideInput } from './guide-input';
+import type { LaidPiece } from './laid-piece';
+import { handWords } from './piece-drawing';
+
+/*
+ * The first page: which order, which cloth, what to mind; and whether the printer prints at true size.
+ */
+
+/** Side of the two squares, mm: 100 mm and 4 in. */
+export const CHECK_SQUARES = [100, 101.6] as const;
+
+export interface TicketWords {
+  /** The paper of the sheets: 'A4', 'a page of the cloth's size'. */
+  readonly paper: string;
+  readonly sheets: number;
+  /** Code points of letters that the fonts lack. */
+  readonly missing: readonly string[];
+}
+
+/** One line of the piece list. */
+export interface PieceCount {
+  readonly garment: string;
+  readonly panel: string;
+  readonly hand: string;
+  readonly count: number;
+}
+
+/** What is cut, garment by garment: as many as the placements give. */
+export function pieceList(pieces: readonly LaidPiece[]): PieceCount[] {
+  const counts = new Map<string, PieceCount>();
+  for (const { garment, panel, hand, copies } of pieces) {
+    const key = JSON.stringify([garment, panel, hand]);
+    counts.set(key, { garment, panel, hand, count: (counts.get(key)?.count ?? 0) + copies });
+  }
+  const order = (one: PieceCount): number => needHands.indexOf(one.hand as (typeof needHands)[number]);
+  return [...counts.values()]
+    .sort(
+      (a, b) =>
+        a.garment.localeCompare(b.garment, 'en') ||
+        a.panel.localeCompare(b.panel, 'en') ||
+        order(a) - order(b)
+    )
+    .map((one) => ({ ...one, hand: handWords(one.hand as LaidPiece['hand']) }));
+}
+
+/** How the hash is read out: the first twelve letters in fours. */
+export function shortHash(hash: string): string {
+  return (hash.slice(0, 12).match(/.{4}/g) ?? [hash]).join(' ');
+}
+
+/** Which lay this is, on every page. */
+export function identity(input: GuideInput): string {
+  return [
+    `Order ${input.orderNumber}`,
+    input.lay,
+    `revision ${input.revision.number}`,
+    shortHash(input.revision.hash)
+  ].join(' · ');
+}
+
+/** What stands at the foot of the desk pages. */
+export function notice(input: GuideInput): string {
+  return input.revision.released === null
+    ? `NOT RELEASED: not to be cut by. ${identity(input)}`
+    : `Released ${input.revision.released}. Scan the code on the ticket before cutting. ${identity(input)}`;
+}
+
+const CAUTIONS = [
+  'Scan the code first: cut only what it calls current.',
+  'Blades: close or cover them after every cut, cut away from yourself, keep the fingers clear of the ruler’s edge.',
+  'Powered cutters: guard down to the cloth, cable clear of the lay, power off before anything is adjusted. ' +
+    'Wear the hand protection that the maker names: knitted gloves can be caught by a moving blade.',
+  'Heavy rolls: a trolley, or two people.',
+  'Local rules, the maker’s manual and trained people come before this sheet.'
+];
+
+/** The ticket, and further pages where the piece list is long. */
+export function drawTicket(
+  input: GuideInput,
+  frame: ClothFrame,
+  pieces: readonly LaidPiece[],
+  say: TicketWords,
+  desk: Desk,
+  lettering: Lettering
+): Page[] {
+  const page = new DeskPage(desk, 'Ticket', lettering);
+  head(page, input);
+  facts(page, input, frame, pieces, say);
+  const list = pieceList(pieces);
+  const squaresTop = page.foot + CHECK_SQUARES[1] + 5;
+  const rest = listPieces(page, list, squaresTop);
+  checkSquares(page, say);
+  cautions(page, input, say, squaresTop);
+  const pages = [page.done(notice(input))];
+  if (rest.length === 0) return pages;
+  let full = new DeskPage(desk, 'Pieces', lettering);
+  const started = (): DeskPage => {
+    full = new DeskPage(desk, 'Pieces', lettering);
+    full.title('Pieces, continued', identity(input));
+    return full;
+  };
+  const last = setTable(
+    started(),
+    [
+      { word: 'pieces', width: 18, align: 'end', weight: 'bold' },
+      { word: 'panel', width: 78, align: 'start', weight: 'bold' },
+      { word: 'hand', width: 26, align: 'start' },
+      { word: 'garment', width: full.width - 122, align: 'start' }
+    ],
+    rest.map((one) => [String(one.count), one.panel, one.hand, one.garment]),
+    (before) => {
+      pages.push(before.done(notice(input)));
+      return started();
+    }
+  );
+  return [...pages, last.done(notice(input))];
+}
+
+function head(page: DeskPage, input: GuideInput): void {
+  page.put(input.studio, page.left, page.top - 3.4, 4.6, { room: page.width - 60 });
+  page.put(`Made ${input.made.words}`, page.right, page.top - 3.4, 3.6, { align: 'end' });
+  page.top -= 16.5;
+  page.put(`Order ${input.orderNumber}`, page.left, page.top, 14, { weight: 'bold' });
+  status(page, input);
+  page.top -= 8.5;
+  const garments = [...new Set(input.document.garments.map((garment) => garment.label))];
+  const text = [input.shortName, garments.join(', ')].filter(Boolean).join(' · ');
+  const lines = wrapText(text, 5.6, page.width, 'bold', page.lettering);
+  const most = 2;
+  lines.slice(0, most).forEach((shown, i) => {
+    const cut = i === most - 1 && lines.length > most ? `${shown} …` : shown;
+    page.put(cut, page.left, page.top, 5.6, { weight: 'bold', room: page.width });
+    page.top -= 6.6;
+  });
+  page.top += 3;
+  page.rule(0.5);
+  page.top -= 2;
+}
+
+/** Released or not, in a box at the right: white on black while it must not be cut. */
+function status(page: DeskPage, input: GuideInput): void {
+  const { released } = input.revision;
+  const text = released === null ? 'NOT RELEASED' : `Released ${released}`;
+  const size = released === null ? 7 : 5.2;
+  const wide = page.lettering.width(text, size, 'bold') + 8;
+  const box: Box = {
+    minX: page.right - wide,
+    maxX: page.right,
+    minY: page.top - 2.4,
+    maxY: page.top + size * 0.7 + 2.4
+  };
+  page.marks.push(
+    released === null ? surface([rectangle(box)], 0) : line(rectangle(box), pen(0.5), true),
+    words({ x: page.right - wide / 2, y: page.top }, text, size, {
+      weight: 'bold',
+      align: 'middle',
+      shade: released === null ? 1 : 0
+    })
+  );
+}
+
+function facts(
+  page: DeskPage,
+  input: GuideInput,
+  frame: ClothFrame,
+  pieces: readonly LaidPiece[],
+  say: TicketWords
+): void {
+  const { strip } = input.document;
+  const { readings } = input;
+  const length = (mm: number): string => formatLength(mm, input.lengthUnit, { decimals: 1 });
+  const percent = (share: number | null): string =>
+    share === null ? 'nothing placed' : `${formatDecimal(share * 100, 1, true)} %`;
+  const { start, end } = strip.endAllowance;
+  const loose = readings.pieces.loose;
+  const count = pieces.reduce((sum, piece) => sum + piece.copies, 0);
+  const rows: [string, string][] = [
+    ['Lay', input.lay],
+    ['Cloth', input.cloth],
+    ['Width', `${length(strip.fullWidth)}, usable ${length(strip.usableWidth)}`],
+    ['Up', sideUpWords(strip)],
+    ['Spread', `${spreadWords(strip)}, ${plies(strip) === 1 ? '1 ply' : `${plies(strip)} plies`}`],
+    ['Nap', napWords(strip)],
+    ['Length of the lay', length(frame.lengthUsed)],
+    [
+      'Cloth it takes',
+      `${length(frame.lengthUsed + start + end)}, with ${length(start)} at the start and ${length(end)} at the end`
+    ],
+    ['Efficiency', `${percent(readings.efficiency)}${loose > 0 ? ' so far' : ''}`],
+    ['Pieces', `${count}${loose > 0 ? `, and ${loose} not on the cloth yet` : ''}`],
+    ['Revision', [String(input.revision.number), input.revision.name].filter(Boolean).join(' · ')],
+    ['Sheets', `${say.sheets} of ${say.paper}`]
+  ];
+  const row = 5.7;
+  const code = 39;
+  const top = page.top;
+  rows.forEach(([word, value], i) => {
+    const y = top - 4.2 - i * row;
+    page.put(word, page.left, y, 3.4);
+    page.put(value, page.left + 31, y, 4.2, { weight: 'bold', room: page.width - 31 - code - 8 });
+  });
+  page.marks.push(...qr(input.scanAddress, page.right - code, top - 2 - code, code));
+  const middle = page.right - code / 2;
+  page.put('Scan: is this the', middle, top - code - 6.5, 3.4, { align: 'middle' });
+  page.put('current revision?', middle, top - code - 10.7, 3.4, { align: 'middle' });
+  page.put(shortHash(input.revision.hash), middle, top - code - 16.5, 4.4, {
+    align: 'middle',
+    weight: 'bold'
+  });
+  page.top = top - rows.length * row - 2.5;
+  page.rule();
+  page.top -= 1;
+}
+
+/** A QR code as filled squares, `side` wide, its quiet zone included. */
+export function qr(text: string, x: number, y: number, side: number): Mark[] {
+  const { modules } = create(text, { errorCorrectionLevel: 'M' });
+  const quiet = 4;
+  const module = side / (modules.size + 2 * quiet);
+  const runs: ReturnType<typeof rectangle>[] = [];
+  for (let row = 0; row < modules.size; row++)
+    for (let column = 0; column < modules.size; column++) {
+      if (!modules.get(row, column)) continue;
+      let end = column;
+      while (end + 1 < modules.size && modules.get(row, end + 1)) end++;
+      const top = y + side - (quiet + row) * module;
+      runs.push(
+        rectangle({
+          minX: x + (quiet + column) * module,
+          maxX: x + (quiet + end + 1) * module,
+          minY: top - module,
+          maxY: top
+        })
+      );
+      column = end;
+    }
+  return [surface(runs, 0)];
+}
+
+/** The piece list in two columns down to `bottom`; gives the lines that found no room. */
+function listPieces(page: DeskPage, list: readonly PieceCount[], bottom: number): readonly PieceCount[] {
+  const row = 5.3;
+  const gap = 6;
+  const width = (page.width - gap) / 2;
+  const perColumn = Math.max(0, Math.floor((page.top - bottom - 1) / row));
+  const fits = list.length <= perColumn * 2;
+  // The last place says where the others are.
+  const shown = fits ? list : list.slice(0, Math.max(0, perColumn * 2 - 1));
+  const tall = fits ? Math.ceil(list.length / 2) : perColumn;
+  const place = (i: number) => ({
+    x: page.left + (i < tall ? 0 : width + gap),
+    y: page.top - ((i % Math.max(tall, 1)) + 1) * row + 1.2
+  });
+  shown.forEach((one, i) => {
+    const { x, y } = place(i);
+    page.put(String(one.count), x + 7, y, 4.4, { weight: 'bold', align: 'end' });
+    const name = [one.panel, one.hand].filter(Boolean).join(', ');
+    const wide = Math.min(page.lettering.width(name, 4, 'bold'), width - 10);
+    page.put(name, x + 10, y, 4, { weight: 'bold', room: width - 10 });
+    if (width - 10 - wide > 12) page.put(one.garment, x + 12 + wide, y, 3.2, { room: width - 12 - wide });
+  });
+  if (!fits && perColumn > 0) {
+    const { x, y } = place(shown.length);
+    page.put(`${list.length - shown.length} more lines on the next page`, x + 10, y, 3.6);
+  }
+  return list.slice(shown.length);
+}
+
+/** Two squares that share their lower left corner, and inside them what to set in the print dialogue. */
+function checkSquares(page: DeskPage, say: TicketWords): void {
+  const x = page.left;
+  const y = page.foot;
+  const [small, large] = CHECK_SQUARES;
+  for (const side of [large, small])
+    page.marks.push(line(rectangle({ minX: x, minY: y, maxX: x + side, maxY: y + side }), pen(0.2), true));
+  page.put('4 in', x + large / 2, y + large + 1, 3, { align: 'middle' });
+  page.put('100 mm', x + small / 2, y + small - 4, 3, { align: 'middle' });
+  page.marks.push(
+    words({ x: x + small - 1.8, y: y + small / 2 }, '100 mm', 3, { align: 'middle', turn: 90 })
+  );
+  page.marks.push(words({ x: x + large + 3.4, y: y + large / 2 }, '4 in', 3, { align: 'middle', turn: 90 }));
+  let top = y + small - 13;
+  const put = (text: string, size: number, weight: 'regular' | 'bold'): void => {
+    for (const shown of wrapText(text, size, small - 18, weight, page.lettering)) {
+      page.put(shown, x + 8, top, size, { weight });
+      top -= size * 1.35;
+    }
+    top -= size * 0.5;
+  };
+  put('In the print dialogue', 5, 'bold');
+  put('Scale 100 %, also called “actual size”.', 4.2, 'regular');
+  put('No “fit to page”, no shrinking, no borderless enlargement.', 4.2, 'regular');
+  put(`Sheets: ${say.paper}, one side only.`, 4.2, 'regular');
+  top -= 2;
+  put('Then measure both squares, both ways', 5, 'bold');
+  put(
+    'Out by half a millimetre here is 5 mm on a metre: do not cut by it. Set the printer right and print again.',
+    4.2,
+    'regular'
+  );
+}
+
+function cautions(page: DeskPage, input: GuideInput, say: TicketWords, squaresTop: number): void {
+  const x = page.left + CHECK_SQUARES[1] + 9;
+  const width = page.right - x;
+  let top = squaresTop - 8;
+  const put = (text: string, size: number, weight: 'regular' | 'bold', gap: number): void => {
+    for (const shown of wrapText(text, size, width, weight, page.lettering)) {
+      page.put(shown, x, top, size, { weight, room: width });
+      top -= size * 1.3;
+    }
+    top -= gap;
+  };
+  put('Mind', 5, 'bold', 1);
+  const own = [
+    ...(plies(input.document.strip) === 1
+      ? ['Single ply: drill holes are marked with thread or chalk, never pierced.']
+      : []),
+    ...CAUTIONS
+  ];
+  for (const text of own) put(text, 3.5, 'regular', 1.3);
+  if (say.missing.length > 0)
+    put(`Letters that our fonts lack, printed as a box: ${say.missing.join(', ')}.`, 3.5, 'bold', 0);
+}
