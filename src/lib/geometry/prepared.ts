@@ -27,7 +27,8 @@ export interface PreparedOutline {
   readonly boxes: Float64Array;
 }
 
-function build(xs: Float64Array, ys: Float64Array, inner: Point): PreparedOutline {
+/** The tree over closed coordinates (first point repeated), counter-clockwise. */
+export function index(xs: Float64Array, ys: Float64Array, inner: Point): PreparedOutline {
   const count = xs.length - 1;
   let leaves = 1;
   while (leaves * LEAF < count) leaves *= 2;
@@ -83,7 +84,7 @@ export function prepare(outline: Outline, inner?: Point): PreparedOutline {
   });
   xs[ring.length] = xs[0]!;
   ys[ring.length] = ys[0]!;
-  return build(xs, ys, inner ?? innermost(ring));
+  return index(xs, ys, inner ?? innermost(ring));
 }
 
 /** `shape` as it comes to lie: the same numbers, digit for digit, that `placeOutline` gives. */
@@ -103,7 +104,7 @@ export function placePrepared(shape: PreparedOutline, placement: Placement): Pre
   }
   const iy = flip ? -shape.inner.y : shape.inner.y;
   const inner = { x: shape.inner.x * cos - iy * sin + dx, y: shape.inner.x * sin + iy * cos + dy };
-  return build(xs, ys, inner);
+  return index(xs, ys, inner);
 }
 
 /** `shape` moved by (dx, dy). */
