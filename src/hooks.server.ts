@@ -1,19 +1,15 @@
 import type { HandleServerError, ServerInit } from '@sveltejs/kit';
 import { sequence } from '@sveltejs/kit/hooks';
 import { building } from '$app/environment';
-import { config } from '$lib/server/config';
-import { migrate, openDatabase, useDatabase } from '$lib/server/database';
 import { headers } from '$lib/server/hooks/headers';
 import { limits } from '$lib/server/hooks/limits';
 import { requestLog } from '$lib/server/hooks/request-log';
 import { session } from '$lib/server/hooks/session';
 import { log } from '$lib/server/log';
+import { startServer } from '$lib/server/start';
 
 export const init: ServerInit = async () => {
-  if (building) return;
-  const db = openDatabase(config.databaseFile);
-  await migrate(db);
-  useDatabase(db);
+  if (!building) await startServer();
 };
 
 export const handle = sequence(requestLog, headers, limits, session);

@@ -54,6 +54,12 @@ export async function migrate(db: Knex): Promise<void> {
   await db.migrate.latest();
 }
 
+/** How many migrations the file still lacks. */
+export async function pendingMigrations(db: Knex): Promise<number> {
+  const [, pending] = (await db.migrate.list()) as [unknown[], unknown[]];
+  return pending.length;
+}
+
 /** Writes a consistent copy of the database while it is in use. `target` must not exist. */
 export async function copyTo(db: Knex, target: string): Promise<void> {
   await db.raw('VACUUM INTO ?', [target]);
