@@ -1,5 +1,6 @@
 import type { Strip } from '$lib/cloth/strip';
 import type { LayDocument, LayPlacement } from './document';
+import { same } from './same';
 
 /*
  * Two people, or one person on two tables, changed the same lay. Three-way: what only one side changed is taken;
@@ -97,17 +98,4 @@ function mergedOrder(base: LayDocument, mine: LayDocument, theirs: LayDocument):
   const known = new Set(old);
   const added = new Set([...mine.placements, ...theirs.placements].map(({ id }) => id));
   return [...old, ...[...added].filter((id) => !known.has(id)).sort()];
-}
-
-/** Deep equality of plain JSON, whatever the order of keys. */
-function same(a: unknown, b: unknown): boolean {
-  if (a === b) return true;
-  if (typeof a !== 'object' || typeof b !== 'object' || a === null || b === null) return false;
-  if (Array.isArray(a) !== Array.isArray(b)) return false;
-  const left = Object.entries(a);
-  const right = b as Readonly<Record<string, unknown>>;
-  return (
-    left.length === Object.keys(right).length &&
-    left.every(([key, value]) => key in right && same(value, right[key]))
-  );
 }
