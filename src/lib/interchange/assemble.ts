@@ -1,0 +1,634 @@
+import type { Point } from '$lib/geometry/point';
+import type { Path, Segment } from '$lib/pattern/panel';
+import { findArrows } from './arrows';
+import { selfContact } from './crossings';
+import { shortText, type Drawing, type DrawnText, type Stroke } from './drawing';
+import { ENDS_MEET, joinStrokes } from './join';
+import { LIMITS, ReadingRefused } from './limits';
+import { cuttingWords, SAYS_NOTHING } from './names';
+import {
+  boxOf,
+  distance,
+  endOf,
+  flatten,
+  isInside,
+  nearestOnPolyline,
+  pathBox,
+  pathLength,
+  reversed,
+  signedArea
+} from './path-measure';
+import {
+  READING_SCHEMA,
+  type ImportFinding,
+  type ReadGrain,
+  type Reading,
+  type ReadLine,
+  type ReadOutline
+} from './reading';
+
+/** No cloth is wider than this on its narrow side, or longer on its long one (common practice, no published source). */
+const WIDEST_CLOTH = 3_300;
+const LONGEST_CLOTH = 50_000;
+/** An open line whose ends are nearer than this, and that stands in no outline, was probably meant to be closed. */
+const NEARLY_CLOSED = 5;
+/** An outline thinner than this on average holds no cloth. */
+const THINNEST = 0.02;
+/** Two outlines that differ by less than this are the same one drawn twice. */
+const SAME_WITHIN = 0.1;
+
+const round = (value: number): number => Math.round(value * 1e6) / 1e6 + 0;
+const roundPoint = ({ x, y }: Point): Point => ({ x: round(x), y: round(y) });
+
+/** A path without stretches of no length, on a grid far finer than any cloth; null when nothing is left. */
+function clean(path: Path): Path | null {
+  const from = roundPoint(path.from);
+  const segments: Segment[] = [];
+  let last = from;
+  for (const segment of path.segments) {
+    const to = roundPoint(segment.to);
+    const still =
+      distance(last, to) < 1e-5 &&
+      (segment.kind === 'line' || (distance(last, segment.c1) < 1e-5 && distance(last, segment.c2) < 1e-5));
+    if (still) continue;
+    segments.push(
+      segment.kind === 'line'
+        ? { kind: 'line', to }
+        : { kind: 'cubic', c1: roundPoint(segment.c1), c2: roundPoint(segment.c2), to }
+    );
+    last = to;
+  }
+  return segments.length === 0 ? null : { from, segments };
+}
+
+function points(path: Path): Point[] {
+  return [
+    path.from,
+    ...path.segments.flatMap((segment) =>
+      segment.kind === 'line' ? [segment.to] : [segment.c1, segment.c2, segment.to]
+    )
+  ];
+}
+
+/** A path that ends exactly where it starts: a last stretch is pulled in or a straight one added. */
+function closePath(path: Path): Path {
+  const end = endOf(path);
+  const gap = distance(end, path.from);
+  const segments = [...path.segments];
+  if (gap === 0) return path;
+  if (gap <= ENDS_MEET && segments.length > 1) {
+    segments[segments.length - 1] = { ...segments[segments.length - 1]!, to: path.from };
+  } else segments.push({ kind: 'line', to: path.from });
+  return { from: path.from, segments };
+}
+
+interface Closed {
+  stroke: Stroke;
+  path: Path;
+  gap: number;
+}
+
+/** The outline, in the order of the list, that is the smallest one around `at`. */
+function smallestAround(at: Point, outlines: readonly Shape[], except?: Shape): Shape | null {
+  let best: Shape | null = null;
+  for (const shape of outlines) {
+    if (shape === except) continue;
+    const { box, area } = shape.outline;
+    if (at.x < box.minX || at.x > box.maxX || at.y < box.minY || at.y > box.maxY) continue;
+    if (best && best.outline.area <= area) continue;
+    if (isInside(at, shape.polygon)) best = shape;
+  }
+  return best;
+}
+
+interface Shape {
+  outline: ReadOutline;
+  polygon: Point[];
+}
+
+/**
+ * Sets `inside` of every outline: the smallest other outline that holds all of it (points on the border count as
+ * held). Outlines that overlap only in part stay side by side.
+ */
+export function nest(outlines: readonly ReadOutline[]): ReadOutline[] {
+  const shapes = outlines.map((outline): Shape => ({ outline, polygon: ring(outline.path) }));
+  const bySize = [...shapes].sort((a, b) => a.outline.area - b.outline.area);
+  return shapes.map((shape) => {
+    const { box, area } = shape.outline;
+    const around = bySize.find(
+      (other) =>
+        other !== shape &&
+        other.outline.area > area &&
+        other.outline.box.minX <= box.minX + 1e-3 &&
+        other.outline.box.minY <= box.minY + 1e-3 &&
+        other.outline.box.maxX >= box.maxX - 1e-3 &&
+        other.outline.box.maxY >= box.maxY - 1e-3 &&
+        holds(other.polygon, shape.polygon)
+    );
+    return { ...shape.outline, inside: around?.outline.id ?? null };
+  });
+}
+
+/** Whether a polygon lies within another: every corner and middle of a side inside it or on its border. */
+function holds(outer: readonly Point[], inner: readonly Point[]): boolean {
+  const closed = [...outer, outer[0]!];
+  // A big inner polygon is looked at in at most 400 places; import only offers, the person decides.
+  const step = Math.max(1, Math.floor(inner.length / 200));
+  for (let i = 0; i < inner.length; i += step) {
+    const a = inner[i]!;
+    const b = inner[(i + 1) % inner.length]!;
+    for (const p of [a, { x: (a.x + b.x) / 2, y: (a.y + b.y) / 2 }])
+      if (!isInside(p, outer) && nearestOnPolyline(p, closed).distance > 0.01) return false;
+  }
+  return true;
+}
+
+function ring(path: Path): Point[] {
+  const polygon = flatten(path);
+  polygon.pop();
+  return polygon;
+}
+
+/** What a drawing comes to: outlines closed, joined, nested and judged, marks and texts given to them. */
+export function assemble(drawing: Drawing): Reading {
+  return new Assembly(drawing).reading();
+}
+
+class Assembly {
+  readonly #drawing: Drawing;
+  readonly #findings: ImportFinding[];
+
+  constructor(drawing: Drawing) {
+    this.#drawing = drawing;
+    this.#findings = drawing.findings;
+  }
+
+  #find(
+    kind: string,
+    severity: ImportFinding['severity'],
+    message: string,
+    place: Point | null = null,
+    about: string | null = null,
+    measure: number | null = null
+  ): void {
+    if (this.#findings.length < 1000) this.#findings.push({ kind, severity, place, about, measure, message });
+  }
+
+  reading(): Reading {
+    const strokes = findArrows(this.#cleanStrokes());
+    const { closed, open } = this.#close(strokes);
+    const shapes = this.#outlines(closed);
+    const lines = this.#lines(open, shapes);
+    const grains = lines
+      .filter(({ meaning }) => meaning === 'grain')
+      .map((line): ReadGrain => ({
+        id: line.id.replace('l', 'g'),
+        from: line.path.from,
+        to: endOf(line.path),
+        outline: line.outline,
+        source: line.grain ?? 'name'
+      }));
+    const outlineAt = (at: Point, group: string): string | null => this.#outlineAt(at, group, shapes);
+    const marks = this.#drawing.marks.map((mark, i) => ({ ...mark, id: `m${i + 1}` }));
+    const notches = marks
+      .filter(({ kind }) => kind === 'notch')
+      .map(({ id, at, group, note }) => ({ id, at, note, outline: outlineAt(at, group) }));
+    for (const line of lines)
+      if (line.meaning === 'notch')
+        notches.push({ id: line.id, at: line.path.from, note: line.name, outline: line.outline });
+    const drillHoles = marks
+      .filter(({ kind }) => kind === 'drill')
+      .map(({ id, at, group, note }) => ({ id, at, note, outline: outlineAt(at, group) }));
+    for (const mark of marks)
+      if (mark.kind === 'turn') {
+        const outline = shapes.find(
+          (shape) =>
+            shape.outline.group === mark.group &&
+            nearestOnPolyline(mark.at, [...shape.polygon, shape.polygon[0]!]).distance <= 0.5
+        );
+        outline?.outline.turnPoints.push(mark.at);
+      }
+    const texts = this.#texts(shapes);
+    const outlines = shapes.map(({ outline }) => outline);
+    if (!outlines.some(({ offered }) => offered))
+      this.#find(
+        'no-outline',
+        'stops',
+        open.length > 0
+          ? 'The file has lines but no closed outline that could be a panel.'
+          : 'The file draws nothing that could be a panel.'
+      );
+    return {
+      schema: READING_SCHEMA,
+      format: this.#drawing.format,
+      title: this.#drawing.title,
+      units: this.#drawing.units,
+      outlines,
+      openLines: lines
+        .filter(
+          ({ meaning }) =>
+            meaning === 'plain' ||
+            meaning === 'internal' ||
+            meaning === 'reference' ||
+            meaning === 'sew' ||
+            meaning === 'boundary' ||
+            meaning === 'cutOut' ||
+            meaning === 'drill'
+        )
+        .map(bare),
+      grains,
+      notches,
+      drillHoles,
+      mirrorLines: lines.filter(({ meaning }) => meaning === 'mirror').map(bare),
+      texts,
+      groups: this.#drawing.groups,
+      findings: this.#findings
+    };
+  }
+
+  #cleanStrokes(): Stroke[] {
+    const kept: Stroke[] = [];
+    let far = 0;
+    for (const stroke of this.#drawing.strokes) {
+      if (
+        points(stroke.path).some(
+          ({ x, y }) => !(Math.abs(x) <= LIMITS.coordinate && Math.abs(y) <= LIMITS.coordinate)
+        )
+      ) {
+        far += 1;
+        continue;
+      }
+      const path = clean(stroke.path);
+      if (path) kept.push({ ...stroke, path, name: shortText(stroke.name, 80) });
+    }
+    if (far > 0)
+      this.#find(
+        'too-far',
+        'warns',
+        `${far} ${far === 1 ? 'line lies' : 'lines lie'} more than a kilometre from the origin or ${far === 1 ? 'has' : 'have'} no number for a place; left out.`,
+        null,
+        null,
+        far
+      );
+    return kept;
+  }
+
+  /** Parts strokes into closed outlines and open lines; joins what meets end to end. */
+  #close(strokes: readonly Stroke[]): { closed: Closed[]; open: Stroke[] } {
+    const closed: Closed[] = [];
+    const loose: Stroke[] = [];
+    const open: Stroke[] = [];
+    for (const stroke of strokes) {
+      const gap = distance(stroke.path.from, endOf(stroke.path));
+      if (stroke.closed || (gap <= ENDS_MEET && stroke.path.segments.length > 1)) {
+        if (!stroke.closed && gap > 0.001) this.#joinedOver(stroke.path.from, gap);
+        closed.push({ stroke, path: closePath(stroke.path), gap: 0 });
+      } else if (['grain', 'mirror', 'notch', 'reference'].includes(stroke.meaning)) open.push(stroke);
+      else loose.push(stroke);
+    }
+    const joined = joinStrokes(loose);
+    for (const { at, gap } of joined.gaps) this.#joinedOver(at, gap);
+    for (const { at, ends } of joined.forks.slice(0, 50))
+      this.#find(
+        'fork',
+        'warns',
+        `${ends} lines end at one place; it is not clear which two belong together.`,
+        at,
+        null,
+        ends
+      );
+    const still: Stroke[] = [];
+    for (const stroke of joined.strokes) {
+      const gap = distance(stroke.path.from, endOf(stroke.path));
+      if (gap <= ENDS_MEET && stroke.path.segments.length > 1) {
+        if (gap > 0.001) this.#joinedOver(stroke.path.from, gap);
+        closed.push({ stroke, path: closePath(stroke.path), gap: 0 });
+      } else still.push(stroke);
+    }
+    const rings = closed.map(({ path }) => ({ ring: ring(path), box: pathBox(path) }));
+    for (const stroke of still) {
+      const gap = distance(stroke.path.from, endOf(stroke.path));
+      const middle = pathMiddle(stroke.path);
+      const stands = rings.some(
+        ({ ring: polygon, box }) =>
+          middle.x >= box.minX &&
+          middle.x <= box.maxX &&
+          middle.y >= box.minY &&
+          middle.y <= box.maxY &&
+          isInside(middle, polygon)
+      );
+      const encloses = stroke.path.segments.length > 1 && Math.abs(signedArea(stroke.path)) > 100;
+      if (encloses && !stands) {
+        const name = stroke.name === '' ? 'An outline' : `'${stroke.name}'`;
+        if (gap <= NEARLY_CLOSED) closed.push({ stroke, path: closePath(stroke.path), gap });
+        else
+          this.#find(
+            'not-closed',
+            'warns',
+            `${name} is not closed: its ends are ${gap.toFixed(1)} mm apart. It was taken as a line.`,
+            stroke.path.from,
+            null,
+            gap
+          );
+        if (gap <= NEARLY_CLOSED) continue;
+      }
+      open.push(stroke);
+    }
+    return { closed, open };
+  }
+
+  #joinedOver(at: Point, gap: number): void {
+    this.#find(
+      'joined',
+      'tells',
+      `Two ends that stood ${gap.toFixed(3)} mm apart were joined.`,
+      at,
+      null,
+      gap
+    );
+  }
+
+  #outlines(closed: readonly Closed[]): Shape[] {
+    const patternFile = closed.some(({ stroke }) => stroke.meaning === 'boundary');
+    const kept: Shape[] = [];
+    for (const { stroke, path, gap } of closed) {
+      if (stroke.meaning === 'reference') continue;
+      const id = `o${kept.length + 1}`;
+      const called = stroke.name === '' ? 'An outline' : `'${stroke.name}'`;
+      if (path.segments.length > LIMITS.outlineSegments) {
+        this.#find(
+          'too-many-segments',
+          'stops',
+          `${called} has ${path.segments.length} lines and curves; ${LIMITS.outlineSegments} are allowed. It was left out.`,
+          path.from,
+          null,
+          path.segments.length
+        );
+        continue;
+      }
+      const area = signedArea(path);
+      const polygon = ring(path);
+      const contact = selfContact(polygon);
+      if (
+        contact.kind !== 'crosses' &&
+        contact.kind !== 'tangled' &&
+        Math.abs(area) < THINNEST * pathLength(path) * 0.5
+      ) {
+        this.#find(
+          'zero-area',
+          'warns',
+          `${called} encloses no area; it was left out.`,
+          path.from,
+          null,
+          Math.abs(area)
+        );
+        continue;
+      }
+      if (stroke.meaning === 'drill' || (stroke.meaning === 'notch' && Math.abs(area) < 400)) {
+        const box = boxOf(polygon);
+        this.#drawing.marks.push({
+          at: { x: (box.minX + box.maxX) / 2, y: (box.minY + box.maxY) / 2 },
+          layer: stroke.layer,
+          group: stroke.group,
+          kind: stroke.meaning,
+          note: ''
+        });
+        continue;
+      }
+      if (kept.length >= LIMITS.outlines)
+        throw new ReadingRefused(
+          'too-many-outlines',
+          `The file has more than ${LIMITS.outlines} closed outlines. Upload the panels in several files.`
+        );
+      const forward = area < 0 ? reversed(path) : path;
+      const outline: ReadOutline = {
+        id,
+        name: stroke.name,
+        path: forward,
+        box: pathBox(forward),
+        area: Math.abs(area),
+        inside: null,
+        layer: shortText(stroke.layer, 80),
+        group: shortText(stroke.group, 80),
+        meaning: stroke.meaning,
+        gap,
+        turnPoints: [],
+        offered: contact.kind === 'clear' || contact.kind === 'touches',
+        says: { ...SAYS_NOTHING }
+      };
+      const size = [outline.box.maxX - outline.box.minX, outline.box.maxY - outline.box.minY].sort(
+        (a, b) => a - b
+      );
+      if (size[0]! > WIDEST_CLOTH || size[1]! > LONGEST_CLOTH)
+        this.#find(
+          'too-large',
+          'warns',
+          `${called} is ${(size[1]! / 10).toFixed(0)} × ${(size[0]! / 10).toFixed(0)} cm, larger than any cloth. Check the scale.`,
+          forward.from,
+          id,
+          size[1]!
+        );
+      if (gap > 0)
+        this.#find(
+          'not-closed',
+          'warns',
+          `${called} is not closed: its ends are ${gap.toFixed(2)} mm apart. If you use it, a straight line closes it.`,
+          forward.from,
+          id,
+          gap
+        );
+      if (contact.kind === 'crosses')
+        this.#find(
+          'crosses-itself',
+          'stops',
+          `${called} crosses itself. Mend it in the drawing and upload it again.`,
+          contact.at,
+          id
+        );
+      if (contact.kind === 'tangled')
+        this.#find(
+          'crosses-itself',
+          'stops',
+          `${called} is too tangled to be judged. Mend it in the drawing and upload it again.`,
+          forward.from,
+          id
+        );
+      if (contact.kind === 'touches')
+        this.#find('touches-itself', 'warns', `${called} touches itself without crossing.`, contact.at, id);
+      kept.push({ outline, polygon });
+    }
+    this.#duplicates(kept);
+    const nested = nest(kept.map(({ outline }) => outline));
+    nested.forEach((outline, i) => {
+      kept[i]!.outline = {
+        ...outline,
+        offered:
+          outline.offered &&
+          outline.inside === null &&
+          (patternFile ? outline.meaning === 'boundary' : outline.meaning !== 'sew')
+      };
+    });
+    // A sew line that no cut line surrounds is an outline like any other.
+    for (const shape of kept)
+      if (!patternFile && shape.outline.meaning === 'sew' && shape.outline.inside === null)
+        shape.outline.offered = !this.#findings.some(
+          ({ about, kind }) => about === shape.outline.id && kind === 'crosses-itself'
+        );
+    return kept;
+  }
+
+  /** The same outline drawn twice on one place: the later one is not kept. */
+  #duplicates(shapes: Shape[]): void {
+    const key = ({ outline: { box } }: Shape, dx: number): string => `${Math.floor(box.minX) + dx}`;
+    const seen = new Map<string, Shape[]>();
+    for (let i = 0; i < shapes.length; i += 1) {
+      const shape = shapes[i]!;
+      const twin = [-1, 0, 1]
+        .flatMap((dx) => seen.get(key(shape, dx)) ?? [])
+        .find((other) => sameShape(other, shape));
+      if (twin) {
+        const name = shape.outline.name || twin.outline.name;
+        this.#find(
+          'duplicate',
+          'warns',
+          `${name === '' ? 'An outline' : `'${name}'`} is drawn twice on the same place; the second one was left out.`,
+          shape.outline.path.from,
+          twin.outline.id
+        );
+        if (twin.outline.name === '') twin.outline.name = shape.outline.name;
+        shapes.splice(i, 1);
+        i -= 1;
+      } else {
+        const list = seen.get(key(shape, 0));
+        if (list) list.push(shape);
+        else seen.set(key(shape, 0), [shape]);
+      }
+    }
+  }
+
+  #outlineAt(at: Point, group: string, shapes: readonly Shape[]): string | null {
+    const mine = group === '' ? [] : shapes.filter(({ outline }) => outline.group === group);
+    return (
+      (
+        smallestAround(
+          at,
+          mine.filter(({ outline }) => outline.offered)
+        ) ??
+        smallestAround(
+          at,
+          shapes.filter(({ outline }) => outline.offered)
+        ) ??
+        (mine.filter(({ outline }) => outline.offered).length === 1
+          ? mine.find(({ outline }) => outline.offered)!
+          : null) ??
+        smallestNear(at, shapes)
+      )?.outline.id ?? null
+    );
+  }
+
+  #lines(open: readonly Stroke[], shapes: readonly Shape[]): (ReadLine & { grain: Stroke['grain'] })[] {
+    return open.map((stroke, i) => ({
+      id: `l${i + 1}`,
+      name: stroke.name,
+      path: stroke.path,
+      layer: shortText(stroke.layer, 80),
+      group: shortText(stroke.group, 80),
+      meaning: stroke.meaning,
+      outline: this.#outlineAt(pathMiddle(stroke.path), stroke.group, shapes),
+      grain: stroke.grain
+    }));
+  }
+
+  /** Gives texts to outlines: a name for those without one, and what they say of cutting. */
+  #texts(shapes: readonly Shape[]): Reading['texts'] {
+    const unused: DrawnText[] = [];
+    const byGroup = new Map(this.#drawing.groups.map((group) => [group.name, group.fields]));
+    for (const { outline } of shapes) {
+      const fields = outline.group === '' ? undefined : byGroup.get(outline.group);
+      if (!fields || !outline.offered) continue;
+      const quantity = /\d+/.exec(fields['QUANTITY'] ?? '');
+      outline.name = shortText(fields['PIECE NAME'] ?? '', 80) || outline.name;
+      outline.says = {
+        ...outline.says,
+        ...cuttingWords(
+          `${fields['ANNOTATION'] ?? ''} ${fields['CATEGORY'] ?? ''} ${fields['MATERIAL'] ?? ''}`
+        ),
+        ...(quantity ? { howMany: Math.min(200, Math.max(1, Number(quantity[0]))) } : {})
+      };
+    }
+    const texts = this.#drawing.texts.map((text) => {
+      const outline = this.#outlineAt(text.at, text.group, shapes);
+      return {
+        ...text,
+        text: shortText(text.text),
+        layer: shortText(text.layer, 80),
+        group: shortText(text.group, 80),
+        outline
+      };
+    });
+    for (const text of texts) {
+      const outline = shapes.find((shape) => shape.outline.id === text.outline)?.outline;
+      const words = cuttingWords(text.text);
+      if (outline && words) outline.says = { ...outline.says, ...words };
+      else if (/^grain/i.test(text.text) || /^[A-Z ]{3,24}:/.test(text.text)) continue;
+      else if (outline && outline.name === '') outline.name = shortText(text.text, 80);
+      else if (outline?.name.toLowerCase() !== text.text.toLowerCase()) unused.push(text);
+    }
+    if (unused.length > 0)
+      this.#find(
+        'text-without-meaning',
+        'tells',
+        `${unused.length === 1 ? 'One text was' : `${unused.length} texts were`} read but not used: ${unused
+          .slice(0, 5)
+          .map(({ text }) => `'${shortText(text, 40)}'`)
+          .join(', ')}${unused.length > 5 ? ' …' : ''}`,
+        unused[0]!.at,
+        null,
+        unused.length
+      );
+    return texts;
+  }
+}
+
+function bare({ id, name, path, layer, group, meaning, outline }: ReadLine): ReadLine {
+  return { id, name, path, layer, group, meaning, outline };
+}
+
+function pathMiddle(path: Path): Point {
+  const flat = flatten(path, 1);
+  const i = Math.floor((flat.length - 1) / 2);
+  const [a, b] = [flat[i]!, flat[i + 1] ?? flat[i]!];
+  return { x: (a.x + b.x) / 2, y: (a.y + b.y) / 2 };
+}
+
+/** The outline whose border passes within 1 mm: notches and fold lines stand on it. */
+function smallestNear(at: Point, shapes: readonly Shape[]): Shape | null {
+  let best: { shape: Shape; away: number } | null = null;
+  for (const shape of shapes) {
+    const { box, offered } = shape.outline;
+    if (!offered || at.x < box.minX - 1 || at.x > box.maxX + 1 || at.y < box.minY - 1 || at.y > box.maxY + 1)
+      continue;
+    const away = nearestOnPolyline(at, [...shape.polygon, shape.polygon[0]!]).distance;
+    if (away <= 1 && (!best || away < best.away)) best = { shape, away };
+  }
+  return best?.shape ?? null;
+}
+
+function sameShape(a: Shape, b: Shape): boolean {
+  const [p, q] = [a.outline.box, b.outline.box];
+  if (
+    Math.abs(p.minX - q.minX) > SAME_WITHIN ||
+    Math.abs(p.minY - q.minY) > SAME_WITHIN ||
+    Math.abs(p.maxX - q.maxX) > SAME_WITHIN ||
+    Math.abs(p.maxY - q.maxY) > SAME_WITHIN
+  )
+    return false;
+  const near = (of: Shape, on: Shape): boolean => {
+    const line = [...on.polygon, on.polygon[0]!];
+    const step = Math.max(1, Math.floor(of.polygon.length / 100));
+    for (let i = 0; i < of.polygon.length; i += step)
+      if (nearestOnPolyline(of.polygon[i]!, line).distance > SAME_WITHIN) return false;
+    return true;
+  };
+  return near(a, b) && near(b, a);
+}
