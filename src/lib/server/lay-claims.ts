@@ -1,0 +1,83 @@
+import type { Strip } from '$lib/cloth/strip';
+import type { LayDocument } from '$lib/lay/document';
+import { panelKey } from '$lib/lay/panel-book';
+import { same } from '$lib/lay/same';
+import type { LayFacts } from './lay-facts';
+import { Problem } from './problem';
+
+/*
+ * What a posted lay may say. The person decides where the pieces lie and what they measured on the table: usable width,
+ * length, flaws, side up, end allowances, reserve, clearance. Garments, needs, full width, nap, sides, repeat and the
+ * step of buying are the order's, the cloth's and the studio's.
+ */
+
+const notTheirs: readonly (keyof Strip)[] = ['fullWidth', 'nap', 'sidesAlike', 'repeat', 'buyStep'];
+
+/**
+ * Refuses (400) a posted document that claims what is the server's to say, or that names anything that is not of this
+ * order. Gives 'facts-changed' when it only repeats what was stored before the order or the cloth changed: then the
+ * person has to take over the new facts.
+ */
+export function refuseWhatIsNotTheirs(
+  posted: LayDocument,
+  current: LayDocument,
+  stored: LayDocument,
+  facts: LayFacts
+): 'fits' | 'facts-changed' {
+  let changed = false;
+  const compare = (what: string, got: unknown, now: unknown, before: unknown): void => {
+    if (same(got, now)) return;
+    if (same(got, before)) changed = true;
+    else
+      throw new Problem(
+        400,
+        'not-of-this-lay',
+        `The ${what} can't be changed here`,
+        `The ${what} of a lay come from its order and cloth. Change them there.`,
+        { field: what }
+      );
+  };
+  compare('garments', posted.garments, current.garments, stored.garments);
+  compare('needs', posted.needs, current.needs, stored.needs);
+  for (const field of notTheirs)
+    compare(field, posted.strip[field], current.strip[field], stored.strip[field]);
+  if (changed) return 'facts-changed';
+  refuseStrangers(posted, stored, facts);
+  if (posted.strip.spread.length > 1 || posted.strip.spread[0]!.layers.length > 1)
+    throw new Problem(
+      400,
+      'spread-not-offered',
+      'Only open cloth in a single ply',
+      `Expected one zone with one layer, got ${posted.strip.spread.length} zones, ${posted.strip.spread[0]!.layers.length} layers.`
+    );
+  return 'fits';
+}
+
+/**
+ * Refuses placements and match points of a garment or panel that is not of this lay. A placement that was stored while the
+ * order still asked for its garment may stay until the person takes it off the cloth.
+ */
+function refuseStrangers(posted: LayDocument, stored: LayDocument, facts: LayFacts): void {
+  const garments = new Map(facts.garments.map((garment) => [garment.id, garment]));
+  const belongs = (garmentId: string, panel: string): boolean => {
+    const garment = garments.get(garmentId);
+    const known = garment && facts.book[panelKey(garment.styleVersion, panel)];
+    return known !== undefined && facts.takes(garment!, known);
+  };
+  const before = new Set(stored.placements.map(({ id, garment, panel }) => `${id}/${garment}/${panel}`));
+  const stranger =
+    posted.placements.find(
+      ({ id, garment, panel }) => !belongs(garment, panel) && !before.has(`${id}/${garment}/${panel}`)
+    ) ??
+    posted.rules.matchGroups
+      .flatMap(({ points }) => points)
+      .find(({ garment, panel }) => !belongs(garment, panel));
+  if (stranger)
+    throw new Problem(
+      400,
+      'not-of-this-lay',
+      'A piece is not of this lay',
+      `The order asks this cloth for no panel ${stranger.panel} of garment ${stranger.garment}.`,
+      { field: 'placements' }
+    );
+}
