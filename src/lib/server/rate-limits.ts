@@ -19,6 +19,8 @@ const limits = {
   'sign-in: address': new RateLimiterMemory({ points: 200, duration: hour }),
   /** Wrong present passwords on the profile page. */
   'password: person': new RateLimiterMemory({ points: 10, duration: 15 * minute }),
+  /** New studios by one person. */
+  'studios: person': new RateLimiterMemory({ points: 10, duration: hour }),
   /** Requests for a mail from one place. */
   'mail: place': new RateLimiterMemory({ points: 20, duration: hour }),
   /** Mails of the door to one address. */
@@ -46,10 +48,9 @@ export async function attempt(limit: Limit, ...parts: string[]): Promise<number>
   }
 }
 
-/** The seconds to wait before the next attempt, without counting one. */
-export async function wait(limit: Limit, ...parts: string[]): Promise<number> {
-  const state = await limits[limit].get(keyOf(parts));
-  return state !== null && state.remainingPoints <= 0 ? Math.ceil(state.msBeforeNext / 1000) : 0;
+/** Takes back one counted attempt that turned out well. */
+export async function giveBack(limit: Limit, ...parts: string[]): Promise<void> {
+  await limits[limit].reward(keyOf(parts));
 }
 
 /** Forgets the attempts: after a right password. */
