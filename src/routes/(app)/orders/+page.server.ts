@@ -1,4 +1,4 @@
-import { dayAt } from '$lib/components/dates';
+import { dayAt } from '$lib/units/days';
 import { allow } from '$lib/server/guard';
 import { readListing } from '$lib/server/listing';
 import * as orders from '$lib/server/orders';

@@ -1,0 +1,136 @@
+import { afterEach, beforeEach, describe, expect, test } from 'vitest';
+import { isSimple } from '$lib/geometry/polygon';
+import type { FindingKind } from '$lib/lay/verdict';
+import { PANEL_SET_SCHEMA, panelSetSchema } from '$lib/pattern/panel';
+import * as accounts from '$lib/server/accounts';
+import { layPanelOf } from '$lib/lay/panel-book';
+import { integrityFaults } from '$lib/server/database';
+import * as demo from '$lib/server/demo';
+import * as content from '$lib/server/demo/content';
+import * as layList from '$lib/server/lay-list';
+import * as lays from '$lib/server/lays';
+import { readListing } from '$lib/server/listing';
+import * as orders from '$lib/server/orders';
+import type { Scope } from '$lib/server/scope';
+import { makeCast, type Cast } from './cast';
+
+let cast: Cast;
+let owner: Scope;
+
+beforeEach(async () => {
+  cast = await makeCast();
+  owner = cast.here.owner.scope;
+});
+afterEach(() => cast.close());
+
+const everyOrder = (scope: Scope) =>
+  orders.list(scope, readListing(new URLSearchParams('sort=number'), orders.orderSorts, 'number'), 'all');
+const everyLay = (scope: Scope) =>
+  layList.list(scope, readListing(new URLSearchParams(), layList.laySorts, 'order'));
+
+const tables = ['styles', 'style_versions', 'cloths', 'orders', 'order_items', 'lays', 'lay_revisions'];
+const counts = async () =>
+  Object.fromEntries(
+    await Promise.all(
+      tables.map(async (table) => [table, (await cast.db(table).count({ n: '*' }))[0]!.n] as const)
+    )
+  );
+
+describe('the panels of the demo', () => {
+  test.each(content.styles)('$name: every panel fits the schema and resolves to simple outlines', (style) => {
+    const { panels } = panelSetSchema.parse({ schema: PANEL_SET_SCHEMA, panels: style.panels });
+    for (const panel of panels) {
+      const { shape } = layPanelOf(panel);
+      expect(isSimple(shape.cut), panel.name).toBe(true);
+      expect(isSimple(shape.sew), panel.name).toBe(true);
+      expect(shape.notches, panel.name).toHaveLength(panel.notches.length * (panel.fold ? 2 : 1));
+    }
+  });
+});
+
+describe('filling', () => {
+  test('a good lay passes the check, a faulty one is found out in each of its faults', async () => {
+    const first = await demo.fill(owner);
+    const all = (await everyLay(owner)).rows;
+    expect(all.every((lay) => lay.verdict?.current)).toBe(true);
+    for (const lay of all.filter((one) => one.name !== 'In a hurry')) {
+      expect(lay.verdict, lay.name).toMatchObject({ loose: 0, stops: 0 });
+      expect(lay.verdict!.efficiency!, `${lay.cloth.name} ${lay.name}`).toBeGreaterThan(0.5);
+    }
+    const good = all.find((lay) => lay.order.id === first)!;
+    expect(good).toMatchObject({ state: 'open', chosen: true });
+    const faulty = await lays.read(owner, all.find((lay) => lay.name === 'In a hurry')!.id);
+    const kinds = new Set(faulty.verdict!.findings.map((finding) => finding.kind));
+    for (const kind of [
+      'overlap',
+      'outside-width',
+      'off-grain',
+      'wrong-hand',
+      'missing'
+    ] satisfies FindingKind[])
+      expect([...kinds]).toContain(kind);
+  });
+
+  test('covers several stages, and an order with all its cloths released', async () => {
+    await demo.fill(owner);
+    const { rows } = await everyOrder(owner);
+    expect(rows.map((order) => order.number)).toEqual([1, 2, 3, 4, 5, 6, 7]);
+    expect(new Set(rows.map((order) => order.stage)).size).toBeGreaterThanOrEqual(5);
+    expect(rows[0]).toMatchObject({ stage: 'handedOver', clothsToLay: 0 });
+  });
+
+  test('twice is filling once; two studios each get their own', async () => {
+    await demo.fill(owner);
+    const once = await counts();
+    await demo.fill(owner);
+    expect(await counts()).toEqual(once);
+    const elsewhere = cast.elsewhere.owner.scope;
+    expect(await demo.isFilled(elsewhere)).toBe(false);
+    await demo.fill(elsewhere);
+    expect((await everyOrder(elsewhere)).total).toBe((await everyOrder(owner)).total);
+  });
+});
+
+describe('clearing', () => {
+  test('leaves nothing of it, and numbers begin again', async () => {
+    const before = await counts();
+    await demo.fill(owner);
+    expect(await demo.clear(owner)).toEqual({ kept: [] });
+    expect(await counts()).toEqual(before);
+    expect(await integrityFaults(cast.db)).toEqual([]);
+    const head = { clientName: 'First own', dueDate: null, stage: 'enquiry', note: '' } as const;
+    expect((await orders.read(owner, await orders.create(owner, head))).number).toBe(1);
+  });
+
+  test("keeps what the studio's own orders take", async () => {
+    await demo.fill(owner);
+    const style = demo.demoId(owner.studio, 'style skirt 1');
+    const cloth = demo.demoId(owner.studio, 'cloth linen');
+    const own = await orders.create(owner, { clientName: 'Own', dueDate: null, stage: 'agreed', note: '' }, [
+      { styleVersionId: style, label: '', quantity: 1, cloths: { main: cloth } }
+    ]);
+    const { kept } = await demo.clear(owner);
+    expect(kept).toEqual(['Wilma skirt', 'Saltmarsh linen, natural']);
+    expect((await orders.read(owner, own)).items[0]!.roles[0]!.cloth?.id).toBe(cloth);
+    expect((await everyOrder(owner)).total).toBe(1);
+    expect((await orders.read(owner, own)).number).toBe(8);
+  });
+
+  test("does not touch another studio's demo", async () => {
+    const elsewhere = cast.elsewhere.owner.scope;
+    await demo.fill(elsewhere);
+    await demo.clear(owner);
+    expect(await demo.isFilled(elsewhere)).toBe(true);
+  });
+});
+
+test('the demo installation has three people who can sign in, and seeding twice changes nothing', async () => {
+  const { studio, signIns } = await demo.seed();
+  expect(await demo.seed()).toMatchObject({ studio });
+  expect(signIns.map((one) => one.role)).toEqual(['owner', 'patternMaker', 'cutter']);
+  for (const { email, password } of signIns) {
+    expect(password.length).toBeGreaterThanOrEqual(12);
+    expect(await accounts.withPassword(email, password)).toMatchObject({ email });
+  }
+  expect(await cast.db('studios').where({ is_demo: 1 })).toHaveLength(1);
+});
