@@ -1,0 +1,294 @@
+import type { Outline } from '$lib/geometry/point';
+import { cosSin, snapTurn } from '$lib/geometry/placement';
+import { difference, FillRule } from 'clipper2-ts';
+import { centredRing, cleaned, formOf, ringArea, ringKey, type Form } from './form';
+import type { SettlePiece, SettlePlacement, SettleProblem, Way } from './problem';
+import { outerSimplified } from './simplify';
+
+/** One copy of a piece that the search moves. Its choices are numbers first … last − 1 of the task's choice arrays. */
+export interface Item {
+  readonly piece: string;
+  readonly copy: number;
+  readonly first: number;
+  readonly last: number;
+}
+
+/** Something that stays where it is: a locked piece, a flaw, the surroundings of a remnant. */
+export interface Fixed {
+  readonly form: number;
+  readonly x: number;
+  readonly y: number;
+}
+
+/**
+ * A problem in the search's own terms. Lengths are in quanta: whole numbers in which every outline of the product
+ * is exact.
+ */
+export interface Task {
+  /** Quanta per unit of the problem. */
+  readonly scale: number;
+  readonly width: number;
+  /** The length that must not be exceeded, null when open. */
+  readonly limit: number | null;
+  /** No lay can be shorter: area ÷ width, the longest piece, the farthest lock. */
+  readonly least: number;
+  /** Greatest x of the locked pieces. */
+  readonly lockedTo: number;
+  readonly forms: readonly Form[];
+  readonly clear: readonly boolean[];
+  readonly clearance: number;
+  readonly items: readonly Item[];
+  readonly fixed: readonly Fixed[];
+  readonly choiceForm: Int32Array;
+  readonly choiceWay: readonly Way[];
+  /** Where the box's centre lies, seen from the piece's origin. */
+  readonly choiceX: Float64Array;
+  readonly choiceY: Float64Array;
+  /** Lattice: the centre lies at phase + k × size; size 0 is none. */
+  readonly phaseX: Float64Array;
+  readonly phaseY: Float64Array;
+  readonly sizeX: Float64Array;
+  readonly sizeY: Float64Array;
+  /** 1 where the piece lies on y = 0. */
+  readonly onFold: Uint8Array;
+  /** The mean of √area: the yardstick of the search. */
+  readonly yardstick: number;
+  readonly area: number;
+}
+
+const MOST = 1.6e7;
+
+/** The problem as a task. `random` deals the nap of groups that may lie either way. */
+export function taskOf(problem: SettleProblem, random: () => number): Task {
+  const scale = scaleOf(problem);
+  const forms: Form[] = [];
+  const clear: boolean[] = [];
+  const byKey = new Map<string, number>();
+  const formNumber = (ring: { xs: Float64Array; ys: Float64Array }, kept: boolean): number => {
+    const key = ringKey(ring) + kept;
+    let number = byKey.get(key);
+    if (number === undefined) {
+      number = forms.length;
+      forms.push(formOf(ring));
+      clear.push(kept);
+      byKey.set(key, number);
+    }
+    return number;
+  };
+
+  const width = Math.round(problem.width * scale);
+  const limit = problem.length === null ? null : Math.round(problem.length * scale);
+  const items: Item[] = [];
+  const choice = {
+    form: [] as number[],
+    way: [] as Way[],
+    x: [] as number[],
+    y: [] as number[],
+    phaseX: [] as number[],
+    phaseY: [] as number[],
+    sizeX: [] as number[],
+    sizeY: [] as number[],
+    onFold: [] as number[]
+  };
+  const grouped = new Map<string, boolean>();
+  const coarse = coarseness(problem);
+  let area = 0;
+  let roots = 0;
+  let longest = 0;
+  for (const piece of problem.pieces) {
+    const rooted = Math.sqrt(outlineArea(piece.outline));
+    const outline =
+      piece.outline.length > 14 && coarse > 0
+        ? outerSimplified(piece.outline, coarse * rooted)
+        : piece.outline;
+    const first = choice.form.length;
+    const seen = new Set<number>();
+    let shortest = Infinity;
+    for (const way of waysOf(piece, problem, grouped, random)) {
+      const centred = centredRing(outline, way, scale);
+      if (!centred) continue;
+      const form = formNumber(centred.ring, true);
+      const { hx, hy } = forms[form]!;
+      if (2 * hy > width || (seen.has(form) && !piece.lattice)) continue;
+      if (limit !== null && 2 * hx > limit) continue;
+      seen.add(form);
+      shortest = Math.min(shortest, 2 * hx);
+      choice.form.push(form);
+      choice.way.push(way);
+      choice.x.push(centred.cx);
+      choice.y.push(centred.cy);
+      choice.onFold.push(piece.onFold ? 1 : 0);
+      const { lattice } = piece;
+      const [cos, sin] = cosSin(way.turn);
+      const ay = lattice ? (way.flip ? -lattice.anchor.y : lattice.anchor.y) : 0;
+      const ax = lattice ? lattice.anchor.x : 0;
+      choice.sizeX.push(lattice?.x ? lattice.x.size * scale : 0);
+      choice.sizeY.push(lattice?.y ? lattice.y.size * scale : 0);
+      choice.phaseX.push(lattice?.x ? (lattice.x.at - (ax * cos - ay * sin)) * scale + centred.cx : 0);
+      choice.phaseY.push(lattice?.y ? (lattice.y.at - (ax * sin + ay * cos)) * scale + centred.cy : 0);
+    }
+    const last = choice.form.length;
+    if (last === first)
+      throw new RangeError(`${piece.name} has no way to lie on a width of ${problem.width}`);
+    longest = Math.max(longest, shortest);
+    for (let copy = 0; copy < piece.copies; copy++) items.push({ piece: piece.id, copy, first, last });
+    const own = outlineArea(piece.outline) * scale * scale;
+    area += own * piece.copies;
+    roots += Math.sqrt(own) * piece.copies;
+  }
+
+  const fixed: Fixed[] = [];
+  const fix = (outline: Outline, kept: boolean) => {
+    const centred = centredRing(outline, { turn: 0, flip: false }, scale);
+    if (!centred) return;
+    fixed.push({ form: formNumber(centred.ring, kept), x: centred.cx, y: centred.cy });
+  };
+  let lockedTo = 0;
+  let lockedArea = 0;
+  for (const lock of problem.locked) {
+    fix(lock.outline, true);
+    for (const p of lock.outline) lockedTo = Math.max(lockedTo, p.x * scale);
+    lockedArea += outlineArea(lock.outline) * scale * scale;
+  }
+  for (const keepOut of problem.keepOuts) fix(keepOut, true);
+  for (const outside of surroundings(problem, scale)) fix(outside, false);
+
+  return {
+    scale,
+    width,
+    limit,
+    least: Math.max((area + lockedArea) / width, longest, lockedTo),
+    lockedTo,
+    forms,
+    clear,
+    clearance: problem.clearance * scale,
+    items,
+    fixed,
+    choiceForm: Int32Array.from(choice.form),
+    choiceWay: choice.way,
+    choiceX: Float64Array.from(choice.x),
+    choiceY: Float64Array.from(choice.y),
+    phaseX: Float64Array.from(choice.phaseX),
+    phaseY: Float64Array.from(choice.phaseY),
+    sizeX: Float64Array.from(choice.sizeX),
+    sizeY: Float64Array.from(choice.sizeY),
+    onFold: Uint8Array.from(choice.onFold),
+    yardstick: items.length ? roots / items.length : width,
+    area: area + lockedArea
+  };
+}
+
+/**
+ * Quanta per unit: 2 × a power of ten, so that decimals stay whole and box centres too, as fine as exact
+ * arithmetic on doubles allows.
+ */
+function scaleOf(problem: SettleProblem): number {
+  let most = Math.max(problem.width, problem.outline ? (problem.length ?? 0) : 0);
+  for (const { outline } of [...problem.pieces, ...problem.locked]) most = Math.max(most, extent(outline));
+  for (const keepOut of problem.keepOuts) most = Math.max(most, extent(keepOut));
+  return 2 * 10 ** Math.floor(Math.log10(MOST / 2 / most));
+}
+
+function extent(outline: Outline): number {
+  const xs = outline.map((p) => p.x);
+  const ys = outline.map((p) => p.y);
+  return Math.max(Math.max(...xs) - Math.min(...xs), Math.max(...ys) - Math.min(...ys));
+}
+
+/** How far, as a share of √area, an outline of many corners may be simplified in the search. */
+function coarseness(problem: SettleProblem): number {
+  let forms = 0;
+  let corners = 0;
+  for (const piece of problem.pieces) {
+    const ways = piece.ways.length * (piece.tilt > 0 ? TILTS.length : 1);
+    forms += ways;
+    corners += ways * piece.outline.length;
+  }
+  const mean = corners / Math.max(1, forms);
+  if (mean <= 20 && forms <= 200) return 0;
+  return forms <= 60 ? 0.0005 : forms <= 240 ? 0.002 : forms <= 800 ? 0.005 : 0.01;
+}
+
+const TILTS = [0, 0.5, -0.5, 1, -1];
+
+function waysOf(
+  piece: SettlePiece,
+  problem: SettleProblem,
+  grouped: Map<string, boolean>,
+  random: () => number
+): Way[] {
+  let ways = piece.ways.slice();
+  if (piece.napGroup !== null) {
+    let along = grouped.get(piece.napGroup);
+    if (along === undefined) grouped.set(piece.napGroup, (along = random() < 0.5));
+    const kept = ways.filter((way) => cosSin(way.turn)[0] > 0 === along);
+    if (kept.length > 0) ways = kept;
+  }
+  if (piece.tilt <= 0) return ways;
+  return TILTS.flatMap((share) =>
+    ways.map((way) => ({ turn: snapTurn(way.turn + share * piece.tilt), flip: way.flip }))
+  );
+}
+
+export function outlineArea(outline: Outline): number {
+  let twice = 0;
+  for (let i = 0, j = outline.length - 1; i < outline.length; j = i++)
+    twice += outline[j]!.x * outline[i]!.y - outline[i]!.x * outline[j]!.y;
+  return Math.abs(twice) / 2;
+}
+
+/**
+ * What lies around a remnant, as outlines without holes: each half of a frame less the remnant, halved again while a
+ * part of the remnant lies in it like an island. The frame is wide enough that the nearest way out of it leads
+ * into the remnant.
+ */
+function surroundings(problem: SettleProblem, scale: number): Outline[] {
+  if (!problem.outline) return [];
+  const remnant = problem.outline.map((p) => ({ x: Math.round(p.x * scale), y: Math.round(p.y * scale) }));
+  const end = Math.max(...remnant.map((p) => p.x));
+  const top = Math.round(problem.width * scale);
+  const margin = Math.round(2 * scale * Math.max(...problem.pieces.map((piece) => extent(piece.outline))));
+  const found: Outline[] = [];
+  const split = (from: number, to: number, depth: number) => {
+    const frame = [
+      { x: from, y: -margin },
+      { x: to, y: -margin },
+      { x: to, y: top + margin },
+      { x: from, y: top + margin }
+    ];
+    const parts = difference([frame], [remnant], FillRule.NonZero);
+    const rings = parts.map((part) =>
+      cleaned(
+        part.map((p) => p.x),
+        part.map((p) => p.y)
+      )
+    );
+    if (depth < 12 && rings.some((ring) => ring && ringArea(ring) < 0)) {
+      const middle = Math.round((Math.max(from, 0) + to) / 2);
+      split(from, middle, depth + 1);
+      split(middle, to, depth + 1);
+      return;
+    }
+    for (const ring of rings)
+      if (ring && ringArea(ring) > 4)
+        found.push(Array.from(ring.xs, (x, k) => ({ x: x / scale, y: ring.ys[k]! / scale })));
+  };
+  split(-margin, end, 0);
+  return found;
+}
+
+/** Which choice of `item` a placement is, and where its centre lies; null if it is none of them. */
+export function choiceOf(task: Task, item: Item, placement: SettlePlacement): number | null {
+  let best: number | null = null;
+  let nearest = 180;
+  for (let c = item.first; c < item.last; c++) {
+    const way = task.choiceWay[c]!;
+    if (way.flip !== placement.flip) continue;
+    const apart = Math.abs(((way.turn - placement.turn + 540) % 360) - 180);
+    if (apart < nearest) {
+      nearest = apart;
+      best = c;
+    }
+  }
+  return best;
+}

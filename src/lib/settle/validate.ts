@@ -1,0 +1,260 @@
+import { placeOutline } from '$lib/geometry/placement';
+import type { Outline, Point } from '$lib/geometry/point';
+import type { Millimetres } from '$lib/units/measure';
+import type { SettleProblem, SettleResult } from './problem';
+
+/** A rule that a result breaks: which pieces, and by how much. */
+export interface Breach {
+  readonly rule:
+    | 'overlap'
+    | 'clearance'
+    | 'outside'
+    | 'keep-out'
+    | 'way'
+    | 'fold'
+    | 'lattice'
+    | 'nap'
+    | 'copies'
+    | 'length';
+  readonly pieces: readonly string[];
+  readonly measure: Millimetres;
+}
+
+/**
+ * Every rule that `result` breaks, found with other code than the search's: on the original outlines as the product
+ * places them, overlaps by a general polygon library, distances between their edges. What is less than
+ * `tolerance` (0.01 mm in the product) counts as touching.
+ */
+export function validate(problem: SettleProblem, result: SettleResult, tolerance: Millimetres): Breach[] {
+  const breaches: Breach[] = [];
+  const pieces = new Map(problem.pieces.map((piece) => [piece.id, piece]));
+  const seen = new Set<string>();
+  const placed: Placed[] = [];
+  const naps = new Map<string, boolean>();
+  let furthest = 0;
+  for (const placement of result.placements) {
+    const piece = pieces.get(placement.piece);
+    const name = `${placement.piece}#${placement.copy}`;
+    if (!piece || seen.has(name) || placement.copy < 0 || placement.copy >= piece.copies) {
+      breaches.push({ rule: 'copies', pieces: [name], measure: 1 });
+      continue;
+    }
+    seen.add(name);
+    const off = Math.min(
+      ...piece.ways
+        .filter((way) => way.flip === placement.flip)
+        .map((way) => Math.abs(((way.turn - placement.turn + 540) % 360) - 180))
+    );
+    if (!(off <= piece.tilt + 1e-4)) breaches.push({ rule: 'way', pieces: [name], measure: off });
+    if (piece.napGroup !== null) {
+      const along = Math.cos((placement.turn * Math.PI) / 180) > 0;
+      if ((naps.get(piece.napGroup) ?? along) !== along)
+        breaches.push({ rule: 'nap', pieces: [name], measure: 180 });
+      naps.set(piece.napGroup, along);
+    }
+    const outline = placeOutline(piece.outline, placement);
+    const low = Math.min(...outline.map((p) => p.y));
+    if (piece.onFold && Math.abs(low) > tolerance)
+      breaches.push({ rule: 'fold', pieces: [name], measure: low });
+    if (piece.lattice) {
+      const [anchor] = placeOutline([piece.lattice.anchor], placement);
+      for (const [v, line] of [
+        [anchor!.x, piece.lattice.x],
+        [anchor!.y, piece.lattice.y]
+      ] as const) {
+        if (!line) continue;
+        const miss = Math.abs(v - line.at - Math.round((v - line.at) / line.size) * line.size);
+        if (miss > tolerance) breaches.push({ rule: 'lattice', pieces: [name], measure: miss });
+      }
+    }
+    placed.push(placedOf(name, outline, false));
+  }
+  for (const lock of problem.locked) placed.push(placedOf(lock.id, lock.outline, true));
+  const limit = problem.length ?? Infinity;
+  for (const one of placed) {
+    furthest = Math.max(furthest, one.maxX);
+    if (one.fixed) continue;
+    const out = Math.max(-one.minX, -one.minY, one.maxY - problem.width, one.maxX - limit);
+    if (out > tolerance) breaches.push({ rule: 'outside', pieces: [one.name], measure: out });
+    if (problem.outline) {
+      const over = reachOutside(one.outline, problem.outline);
+      if (over > tolerance) breaches.push({ rule: 'outside', pieces: [one.name], measure: over });
+    }
+    for (const keepOut of problem.keepOuts)
+      compare(one, placedOf('keep-out', keepOut, true), problem.clearance, 'keep-out');
+  }
+  if (Math.abs(furthest - result.length) > tolerance)
+    breaches.push({ rule: 'length', pieces: [], measure: furthest - result.length });
+  placed.sort((a, b) => a.minX - b.minX);
+  for (let i = 0; i < placed.length; i++)
+    for (let j = i + 1; j < placed.length; j++) {
+      if (placed[j]!.minX >= placed[i]!.maxX + problem.clearance) break;
+      if (!placed[i]!.fixed || !placed[j]!.fixed)
+        compare(placed[i]!, placed[j]!, problem.clearance, 'overlap');
+    }
+  return breaches;
+
+  function compare(a: Placed, b: Placed, clearance: number, rule: 'overlap' | 'keep-out'): void {
+    if (
+      a.minX >= b.maxX + clearance ||
+      b.minX >= a.maxX + clearance ||
+      a.minY >= b.maxY + clearance ||
+      b.minY >= a.maxY + clearance
+    )
+      return;
+    const depth = depthOf(a, b);
+    if (depth > tolerance) breaches.push({ rule, pieces: [a.name, b.name], measure: depth });
+    else if (clearance > 0) {
+      const short = clearance - distance(a.outline, b.outline);
+      if (short > tolerance) breaches.push({ rule: 'clearance', pieces: [a.name, b.name], measure: short });
+    }
+  }
+}
+
+interface Placed {
+  readonly name: string;
+  readonly outline: Outline;
+  readonly fixed: boolean;
+  readonly minX: number;
+  readonly minY: number;
+  readonly maxX: number;
+  readonly maxY: number;
+  readonly inner: () => Point;
+}
+
+function placedOf(name: string, outline: Outline, fixed: boolean): Placed {
+  const box = { minX: Infinity, minY: Infinity, maxX: -Infinity, maxY: -Infinity };
+  for (const { x, y } of outline) {
+    box.minX = Math.min(box.minX, x);
+    box.minY = Math.min(box.minY, y);
+    box.maxX = Math.max(box.maxX, x);
+    box.maxY = Math.max(box.maxY, y);
+  }
+  let inner: Point | null = null;
+  return { name, outline, fixed, ...box, inner: () => (inner ??= innerPlace(outline, box)) };
+}
+
+/**
+ * How deep two outlines reach into each other: the largest distance to the border of one, of a place of the other's
+ * border (or its inner place) that lies inside it. Borders are looked at between all their crossings.
+ */
+function depthOf(a: Placed, b: Placed): number {
+  return Math.max(reach(a, b), reach(b, a));
+}
+
+/** How deep places of `outline` lie inside `other`. */
+function reach(one: Placed, other: Placed): number {
+  let depth = depthInside(one.inner(), other.outline);
+  const { outline } = one;
+  for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
+    const a = outline[j]!;
+    const b = outline[i]!;
+    if (
+      Math.max(a.x, b.x) <= other.minX ||
+      Math.min(a.x, b.x) >= other.maxX ||
+      Math.max(a.y, b.y) <= other.minY ||
+      Math.min(a.y, b.y) >= other.maxY
+    )
+      continue;
+    const stops = [0, 1, ...crossings(a, b, other.outline)].sort((s, t) => s - t);
+    for (let k = 0; k < stops.length; k++) {
+      depth = Math.max(depth, depthInside(along(a, b, stops[k]!), other.outline));
+      if (k > 0)
+        depth = Math.max(depth, depthInside(along(a, b, (stops[k - 1]! + stops[k]!) / 2), other.outline));
+    }
+  }
+  return depth;
+}
+
+const along = (a: Point, b: Point, t: number): Point => ({
+  x: a.x + t * (b.x - a.x),
+  y: a.y + t * (b.y - a.y)
+});
+
+/** Where along a → b, 0 … 1, the edges of `outline` cross it. */
+function crossings(a: Point, b: Point, outline: Outline): number[] {
+  const found: number[] = [];
+  const dx = b.x - a.x;
+  const dy = b.y - a.y;
+  for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
+    const c = outline[j]!;
+    const ex = outline[i]!.x - c.x;
+    const ey = outline[i]!.y - c.y;
+    const across = dx * ey - dy * ex;
+    if (across === 0) continue;
+    const t = ((c.x - a.x) * ey - (c.y - a.y) * ex) / across;
+    const s = ((c.x - a.x) * dy - (c.y - a.y) * dx) / across;
+    if (t > 0 && t < 1 && s >= 0 && s <= 1) found.push(t);
+  }
+  return found;
+}
+
+/** How far inside `outline` a place lies; 0 outside. */
+function depthInside(p: Point, outline: Outline): number {
+  let inside = false;
+  for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
+    const a = outline[j]!;
+    const b = outline[i]!;
+    if (a.y <= p.y !== b.y <= p.y && a.x + ((p.y - a.y) / (b.y - a.y)) * (b.x - a.x) > p.x) inside = !inside;
+  }
+  return inside ? cornersTo([p], outline) : 0;
+}
+
+/** A place well inside: the middle of the longest chord of a few across the outline. */
+function innerPlace(outline: Outline, box: { minY: number; maxY: number }): Point {
+  let best = outline[0]!;
+  let longest = -1;
+  for (let k = 1; k < 16; k++) {
+    const y = box.minY + ((box.maxY - box.minY) * k) / 16;
+    const xs: number[] = [];
+    for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
+      const a = outline[j]!;
+      const b = outline[i]!;
+      if (a.y <= y !== b.y <= y) xs.push(a.x + ((y - a.y) / (b.y - a.y)) * (b.x - a.x));
+    }
+    xs.sort((s, t) => s - t);
+    for (let i = 0; i + 1 < xs.length; i += 2) {
+      if (xs[i + 1]! - xs[i]! <= longest) continue;
+      longest = xs[i + 1]! - xs[i]!;
+      best = { x: (xs[i]! + xs[i + 1]!) / 2, y };
+    }
+  }
+  return best;
+}
+
+/** How far a border reaches out of the outline that should hold it. */
+function reachOutside(border: Outline, holder: Outline): number {
+  let most = 0;
+  for (let i = 0, j = border.length - 1; i < border.length; j = i++) {
+    const a = border[j]!;
+    const b = border[i]!;
+    const stops = [0, 1, ...crossings(a, b, holder)].sort((s, t) => s - t);
+    for (let k = 0; k < stops.length; k++) {
+      const places = [along(a, b, stops[k]!)];
+      if (k > 0) places.push(along(a, b, (stops[k - 1]! + stops[k]!) / 2));
+      for (const p of places) if (depthInside(p, holder) === 0) most = Math.max(most, cornersTo([p], holder));
+    }
+  }
+  return most;
+}
+
+/** The least distance between the edges of two outlines that do not cross. */
+function distance(a: Outline, b: Outline): number {
+  return Math.min(cornersTo(a, b), cornersTo(b, a));
+}
+
+function cornersTo(corners: Outline, outline: Outline): number {
+  let least = Infinity;
+  for (const p of corners)
+    for (let i = 0, j = outline.length - 1; i < outline.length; j = i++)
+      least = Math.min(least, toEdge(p, outline[j]!, outline[i]!));
+  return least;
+}
+
+function toEdge(p: Point, a: Point, b: Point): number {
+  const dx = b.x - a.x;
+  const dy = b.y - a.y;
+  const t = ((p.x - a.x) * dx + (p.y - a.y) * dy) / (dx * dx + dy * dy || 1);
+  const c = t < 0 ? 0 : t > 1 ? 1 : t;
+  return Math.sqrt((p.x - a.x - c * dx) ** 2 + (p.y - a.y - c * dy) ** 2);
+}
