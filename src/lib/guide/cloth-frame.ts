@@ -58,7 +58,7 @@ export const EDGE_PEN = pen(0.35);
 const OUTER_PEN = pen(0.25, [6, 3]);
 
 /** How far apart the words and the numbers along an edge stand, so that a small sheet still shows one. */
-const WORDS_STEP: Millimetres = 400;
+const WORDS_STEP: Millimetres = 160;
 
 /** The frame's lines, ticks and words, in cloth coordinates. */
 export function drawFrame(frame: ClothFrame, unit: LengthUnit): Mark[] {
@@ -164,10 +164,10 @@ export function spreadWords(strip: Strip): string {
   const count = plies(strip);
   const folded = strip.spread.some((zone) => zone.fold !== 'none');
   if (folded) return strip.spread.length > 1 ? 'partly folded lengthwise' : 'folded lengthwise';
-  if (count === 1) return 'open, single ply';
+  if (count === 1) return 'open';
   const layers = strip.spread[0]!.layers;
   const facing = layers.some((layer) => layer.sideUp !== layers[0]!.sideUp);
-  return facing ? `${count} plies face to face` : `${count} plies, all facing the same way`;
+  return facing ? 'face to face' : 'all facing the same way';
 }
 
 /** Whether and which way the nap runs on the top ply: along the warp arrow, against it, or not at all. */

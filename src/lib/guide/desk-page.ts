@@ -1,5 +1,15 @@
 import type { Millimetres } from '$lib/units/measure';
-import { fitText, line, pen, words, type Lettering, type Mark, type Page, type Weight } from './drawing';
+import {
+  fitText,
+  line,
+  pen,
+  words,
+  type Layer,
+  type Lettering,
+  type Mark,
+  type Page,
+  type Weight
+} from './drawing';
 
 /*
  * The pages that are read at a desk (ticket, overview, map): one layer, margins all round, filled from the top.
@@ -15,6 +25,8 @@ export interface Desk {
 /** A page under way: marks, and how far down it is filled. */
 export class DeskPage {
   readonly marks: Mark[] = [];
+  /** Drawings with a window of their own, behind the marks. */
+  readonly drawings: Layer[] = [];
   /** The next free height, from the foot of the paper. */
   top: Millimetres;
   readonly left = DESK_MARGIN;
@@ -48,14 +60,14 @@ export class DeskPage {
   }
 
   /** A line over the page at the next free height. */
-  rule(width: Millimetres = 0.25): void {
+  rule(width: Millimetres = 0.25, shade = 0): void {
     this.marks.push(
       line(
         [
           { x: this.left, y: this.top },
           { x: this.right, y: this.top }
         ],
-        pen(width)
+        pen(width, [], shade)
       )
     );
   }
@@ -77,12 +89,14 @@ export class DeskPage {
     return {
       ...this.desk,
       name: this.name,
-      layers: [{ origin: { x: 0, y: 0 }, scale: 1, window: null, marks: this.marks }]
+      layers: [...this.drawings, { origin: { x: 0, y: 0 }, scale: 1, window: null, marks: this.marks }]
     };
   }
 }
 
 export interface TableColumn {
+  /** Words over this column and those after it that have none: 'head of the grain line'. */
+  readonly group?: string;
   readonly word: string;
   readonly width: Millimetres;
   readonly align: 'start' | 'end';
@@ -114,7 +128,16 @@ export function setTable(
       x += column.width;
     });
   };
+  const grouped = columns.some((column) => column.group);
   const head = (): void => {
+    if (grouped) {
+      let x = page.left;
+      for (const { group, width } of columns) {
+        if (group) page.put(group, x + 4, page.top - 3.2, 3.1, { weight: 'bold' });
+        x += width;
+      }
+      page.top -= 4.4;
+    }
     cells(
       columns.map((column) => column.word),
       page.top - 3.5,
@@ -123,7 +146,7 @@ export function setTable(
     page.top -= 5;
     page.rule();
   };
-  if (page.top - 5 - ROW < page.foot) page = next(page);
+  if (page.top - (grouped ? 9.4 : 5) - ROW < page.foot) page = next(page);
   head();
   for (const row of rows) {
     if (page.top - ROW < page.foot) {
@@ -132,7 +155,7 @@ export function setTable(
     }
     cells(row, page.top - ROW + 1.9, false);
     page.top -= ROW;
-    page.rule(0.1);
+    page.rule(0.2, 0.7);
   }
   return page;
 }

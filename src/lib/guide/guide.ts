@@ -173,7 +173,7 @@ function planCloth({ input, choice, pieces, frame, desk, missing, lettering }: C
     identity: identity(input),
     strip: input.document.strip,
     released: input.revision.released !== null,
-    from: { x: 'from the zero line', y: `from the near ${frame.near}` }
+    near: frame.near
   };
   const paper =
     choice.kind === 'whole'
@@ -231,7 +231,7 @@ function planPanels({ input, choice, pieces, frame, desk, missing, lettering }: 
           identity: `${piece.panel}${handWords(piece.hand) && `, ${handWords(piece.hand)}`} · ${identity(input)}`,
           strip: input.document.strip,
           released: input.revision.released !== null,
-          from: null
+          near: null
         };
         const name = (tile: Tile): string =>
           printed(tiling).length === 1 ? String(piece.number) : `${piece.number}-${tile.label}`;

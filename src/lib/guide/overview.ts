@@ -16,8 +16,7 @@ import { identity, notice } from './ticket';
 
 /** The least height of the cloth on paper: a longer lay goes on in further stretches below. */
 const LEAST_HEIGHT = 70;
-const TALLEST = 105;
-const RULER = 7;
+const RULER = 9;
 
 /** The overview: the drawing in one or more stretches, then the table over as many pages as it takes. */
 export function drawOverview(
@@ -41,22 +40,21 @@ export function drawOverview(
   const length = frame.extent.maxX - frame.extent.minX;
   const width = frame.extent.maxY - frame.extent.minY;
   const room = page.width - RULER - 2;
-  const scale = Math.min(TALLEST / width, Math.max(room / length, Math.min(LEAST_HEIGHT / width, 0.2)));
+  // A short lay fills the page; the table then starts on the next one.
+  const tallest = page.top - page.foot - RULER - 20;
+  const scale = Math.min(tallest / width, Math.max(room / length, Math.min(LEAST_HEIGHT / width, 0.2)));
   const stretch = room / scale;
   for (let from = frame.extent.minX; from < frame.extent.maxX - 1e-6; from += stretch) {
-    const high = width * scale + RULER + 9;
+    const high = width * scale + RULER + 11;
     if (page.top - high < page.foot) page = next(page);
-    page.marks.push(
-      ...drawStretch(frame, pieces, {
-        from,
-        to: Math.min(from + stretch, frame.extent.maxX),
-        scale,
-        left: page.left + RULER,
-        bottom: page.top - high + RULER + 3,
-        unit: input.lengthUnit,
-        lettering
-      })
-    );
+    drawStretch(page, frame, pieces, {
+      from,
+      to: Math.min(from + stretch, frame.extent.maxX),
+      scale,
+      left: page.left + RULER,
+      bottom: page.top - high + RULER + 4,
+      unit: input.lengthUnit
+    });
     page.top -= high;
   }
   page.put(
@@ -81,20 +79,25 @@ export function drawOverview(
 }
 
 function columns(width: number, unit: LengthUnit) {
-  const figure = (word: string) => ({ word, width: 20, align: 'end' as const });
+  const figure = (word: string, group?: string) => ({
+    word,
+    width: 20,
+    align: 'end' as const,
+    ...(group && { group })
+  });
   const rest = width - 9 - 8 * 20;
   return [
     { word: 'no.', width: 9, align: 'end' as const, weight: 'bold' as const },
     { word: 'piece', width: rest * 0.56, align: 'start' as const, weight: 'bold' as const },
-    { word: `garment (all in ${unit})`, width: rest * 0.44, align: 'start' as const },
-    figure('tail: zero'),
-    figure('tail: near'),
-    figure('head: zero'),
-    figure('head: near'),
-    figure('edges: from'),
-    figure('to, zero'),
-    figure('from'),
-    figure('to, near')
+    { word: `garment (lengths in ${unit})`, width: rest * 0.44, align: 'start' as const },
+    figure('from zero', 'grain line, tail'),
+    figure('from near'),
+    figure('from zero', 'grain line, head'),
+    figure('from near'),
+    figure('nearest', 'edges from zero'),
+    figure('farthest'),
+    figure('nearest', 'edges from near'),
+    figure('farthest')
   ];
 }
 
@@ -123,94 +126,98 @@ interface Stretch {
   readonly left: number;
   readonly bottom: number;
   readonly unit: LengthUnit;
-  readonly lettering: Lettering;
 }
 
 const THIN = pen(0.18);
+const LINE = pen(0.35);
+const OUTER = pen(0.18, [1.5, 1]);
 
 /** One stretch of the cloth with its rulers; what reaches beyond it is cut off at its ends. */
-function drawStretch(frame: ClothFrame, pieces: readonly LaidPiece[], view: Stretch): Mark[] {
+function drawStretch(page: DeskPage, frame: ClothFrame, pieces: readonly LaidPiece[], view: Stretch): void {
   const { from, to, scale, left, bottom } = view;
-  const at = (x: number, y: number): Point => ({
-    x: left + (Math.min(Math.max(x, from), to) - from) * scale,
+  const at = ({ x, y }: Point): Point => ({
+    x: left + (x - from) * scale,
     y: bottom + (y - frame.extent.minY) * scale
   });
-  const { cloth, usableWidth, lengthUsed } = frame;
-  const marks: Mark[] = [];
-  const along = (y: number, withPen = THIN): void => {
-    marks.push(line([at(cloth.minX, y), at(cloth.maxX, y)], withPen));
-  };
-  const across = (x: number, withPen = THIN): void => {
-    if (x >= from && x <= to) marks.push(line([at(x, cloth.minY), at(x, cloth.maxY)], withPen));
-  };
-  for (const piece of pieces) {
-    if (piece.box.maxX <= from || piece.box.minX >= to) continue;
-    const cut = clipped(piece.cut, from, to).map((p) => at(p.x, p.y));
-    if (cut.length < 3) continue;
-    marks.push(
-      surface([cut, ...piece.cutOuts.map((hole) => clipped(hole, from, to).map((p) => at(p.x, p.y)))], 0.93),
-      line(cut, pen(0.3), true)
-    );
-    for (const hole of piece.cutOuts)
-      marks.push(
-        line(
-          clipped(hole, from, to).map((p) => at(p.x, p.y)),
-          THIN,
-          true
-        )
-      );
-    const [tail, head] = [at(piece.grain.from.x, piece.grain.from.y), at(piece.grain.to.x, piece.grain.to.y)];
-    if (
-      piece.grain.to.x > from &&
-      piece.grain.to.x < to &&
-      piece.grain.from.x > from &&
-      piece.grain.from.x < to
-    ) {
-      marks.push(line([tail, head], THIN), arrowHead(tail, head, 1.8));
-    }
-    marks.push(...label(piece, cut, [tail, head], view.lettering));
-  }
-  const dashed = pen(0.18, [1.5, 1]);
-  along(cloth.minY, dashed);
-  along(cloth.maxY, dashed);
-  along(0, pen(0.35));
-  along(usableWidth, pen(0.35));
-  across(cloth.minX, dashed);
-  across(cloth.maxX, dashed);
-  across(0, pen(0.35));
-  across(lengthUsed, pen(0.35));
-  marks.push(...rulers(frame, view));
-  return marks;
+  const { cloth, extent } = frame;
+  const marks: Mark[] = pieces
+    .filter(({ box }) => box.maxX > from && box.minX < to)
+    .flatMap((piece) => drawSmall(piece, at, view, page.lettering));
+  for (const [y, withPen] of [
+    [cloth.minY, OUTER],
+    [cloth.maxY, OUTER],
+    [0, LINE],
+    [frame.usableWidth, LINE]
+  ] as const)
+    marks.push(line([at({ x: cloth.minX, y }), at({ x: cloth.maxX, y })], withPen));
+  for (const [x, withPen] of [
+    [cloth.minX, OUTER],
+    [cloth.maxX, OUTER],
+    [0, LINE],
+    [frame.lengthUsed, LINE]
+  ] as const)
+    marks.push(line([at({ x, y: cloth.minY }), at({ x, y: cloth.maxY })], withPen));
+  page.drawings.push({
+    origin: { x: 0, y: 0 },
+    scale: 1,
+    window: {
+      minX: left - 0.3,
+      maxX: left + (to - from) * scale + 0.3,
+      minY: bottom - 0.3,
+      maxY: bottom + (extent.maxY - extent.minY) * scale + 0.3
+    },
+    marks
+  });
+  page.marks.push(...rulers(frame, view));
+}
+
+function drawSmall(
+  piece: LaidPiece,
+  at: (point: Point) => Point,
+  { from, to }: Stretch,
+  lettering: Lettering
+): Mark[] {
+  const holes = piece.cutOuts.map((hole) => hole.map(at));
+  const tail = at(piece.grain.from);
+  const head = at(piece.grain.to);
+  const cut = piece.cut.map(at);
+  // What of it is seen here; the whole of it but where it runs on into the next stretch.
+  const seen = clipped(piece.cut, from, to).map(at);
+  return [
+    surface([cut, ...holes], 0.93),
+    line(cut, pen(0.3), true),
+    ...holes.map((hole) => line(hole, THIN, true)),
+    line([tail, head], THIN),
+    arrowHead(tail, head, 1.8),
+    ...label(piece, seen, [[tail, head], ...holes], lettering)
+  ];
 }
 
 /** The number, with the name where it fits. */
 function label(
   piece: LaidPiece,
-  cut: readonly Point[],
-  grain: readonly Point[],
+  seen: readonly Point[],
+  lines: readonly (readonly Point[])[],
   lettering: Lettering
 ): Mark[] {
-  const box = boundingBox(cut);
+  const box = boundingBox(seen);
   const middle = { x: (box.minX + box.maxX) / 2, y: (box.minY + box.maxY) / 2 };
   const size = 4;
-  for (const text of [
-    `${piece.number} ${[piece.panel, handWords(piece.hand)].filter(Boolean).join(', ')}`,
-    `${piece.number} ${piece.panel}`,
-    String(piece.number)
-  ]) {
-    const found = placeLabel(cut, [grain], middle, lettering.width(text, size, 'bold') + 1, size);
-    const shown = size * found.scale;
-    if (shown < 2.4 && text !== String(piece.number)) continue;
-    const scaled = Math.max(shown, 1.6);
+  const number = String(piece.number);
+  const name = `${number} ${piece.panel}`;
+  for (const text of [[name, handWords(piece.hand)].filter(Boolean).join(', '), name, number]) {
+    const found = placeLabel(seen, lines, middle, lettering.width(text, size, 'bold') + 1, size);
+    const fits = size * found.scale;
+    if (fits < 2.4 && text !== number) continue;
+    // A number that finds no room inside is still read: it may touch the lines.
+    const shown = Math.max(fits, 2.2);
     const turned = (found.turn * Math.PI) / 180;
+    const down = shown * 0.35;
     return [
       words(
-        {
-          x: found.centre.x + Math.sin(turned) * scaled * 0.35,
-          y: found.centre.y - Math.cos(turned) * scaled * 0.35
-        },
+        { x: found.centre.x + Math.sin(turned) * down, y: found.centre.y - Math.cos(turned) * down },
         text,
-        scaled,
+        shown,
         { weight: 'bold', align: 'middle', turn: found.turn }
       )
     ];

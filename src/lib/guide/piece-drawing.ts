@@ -16,7 +16,7 @@ const FOLD_PEN = pen(0.25, [8, 2, 2, 2]);
 const GRAIN_PEN = pen(0.35);
 const THIN = pen(0.2);
 
-const LARGEST_NAME: Millimetres = 9;
+const LARGEST_NAME: Millimetres = 12;
 const SMALLEST_NAME: Millimetres = 2.2;
 
 /** What the label says beside the piece's own words. */
@@ -87,9 +87,9 @@ function notes(piece: LaidPiece, label: LabelWords): Mark[][] {
       ],
       THIN
     ),
-    ...(note ? [words({ x: at.x + 4.5, y: at.y + 1 }, note, 2.8)] : []),
+    ...(note ? [words({ x: at.x + 4.5, y: at.y + 1 }, note, 3.2)] : []),
     ...(label.singlePly
-      ? [words({ x: at.x + 4.5, y: at.y - 2.6 }, 'mark with thread or chalk, don’t pierce', 2.4)]
+      ? [words({ x: at.x + 4.5, y: at.y - 3.4 }, 'mark with thread or chalk, don’t pierce', 3)]
       : [])
   ]);
   const lines = piece.internalLines.map(({ points, note }) => {
@@ -100,7 +100,7 @@ function notes(piece: LaidPiece, label: LabelWords): Mark[][] {
     const middle = { x: (from.x + to.x) / 2, y: (from.y + to.y) / 2 };
     const up = ((turn + 90) * Math.PI) / 180;
     return [
-      words({ x: middle.x + Math.cos(up), y: middle.y + Math.sin(up) }, note, 2.8, { align: 'middle', turn })
+      words({ x: middle.x + Math.cos(up), y: middle.y + Math.sin(up) }, note, 3.2, { align: 'middle', turn })
     ];
   });
   return [...holes, ...lines];

@@ -41,7 +41,6 @@ export function drawMap(
 ): Page {
   const page = new DeskPage(desk, 'Map of the sheets', lettering);
   page.title('Map of the sheets', identity(input));
-  const low = page.foot + 46;
   const all = tiling.tiles.map((tile) => tile.window);
   const box = {
     minX: Math.min(...all.map((w) => w.minX)),
@@ -49,16 +48,36 @@ export function drawMap(
     maxX: Math.max(...all.map((w) => w.maxX)),
     maxY: Math.max(...all.map((w) => w.maxY))
   };
-  const scale = Math.min(page.width / (box.maxX - box.minX), (page.top - low) / (box.maxY - box.minY));
-  const bottom = page.top - (box.maxY - box.minY) * scale;
+  const long = box.maxX - box.minX;
+  const high = box.maxY - box.minY;
+  // The words stand below a long cloth, beside a short one: whichever leaves the map larger.
+  const below = Math.min(page.width / long, (page.top - page.foot - 46) / high);
+  const beside = Math.min((page.width - 96) / long, (page.top - page.foot) / high);
+  const scale = Math.max(below, beside);
+  const bottom = page.top - high * scale;
   const at = (x: number, y: number) => ({
     x: page.left + (x - box.minX) * scale,
     y: bottom + (y - box.minY) * scale
   });
   page.marks.push(...mapMarks(frame, pieces, tiling, checks, at, scale));
-  page.top = bottom - 5;
-  explain(page, input, frame, tiling, checks);
+  if (beside > below) {
+    const x = page.left + long * scale + 8;
+    const width = page.right - x;
+    const end = explain(page, { x, y: page.top, width }, input, frame, tiling);
+    tapedUp(page, { x, y: end - 4, width }, input, checks);
+  } else {
+    const y = bottom - 5;
+    explain(page, { x: page.left, y, width: page.width * 0.46 }, input, frame, tiling);
+    tapedUp(page, { x: page.left + page.width * 0.52, y, width: page.width * 0.48 }, input, checks);
+  }
   return page.done(notice(input));
+}
+
+/** A column of words: its upper left corner and width. */
+interface Column {
+  readonly x: number;
+  readonly y: number;
+  readonly width: number;
 }
 
 function mapMarks(
@@ -89,7 +108,7 @@ function mapMarks(
     const box = { minX: low.x, minY: low.y, maxX: high.x, maxY: high.y };
     marks.push(line(rectangle(box), tile.blank ? pen(0.15, [0.6, 1.2]) : pen(0.3), true));
     if (tile.blank) continue;
-    const size = Math.min((box.maxY - box.minY) * 0.5, (box.maxX - box.minX) / (tile.label.length * 0.75), 8);
+    const size = Math.min((box.maxY - box.minY) * 0.4, (box.maxX - box.minX) / (tile.label.length * 0.95), 8);
     marks.push(
       words({ x: (box.minX + box.maxX) / 2, y: (box.minY + box.maxY) / 2 - size * 0.35 }, tile.label, size, {
         align: 'middle',
@@ -111,25 +130,24 @@ function mapMarks(
   return marks;
 }
 
+/** What the map shows and how the sheets are joined; gives the height at which it ends. */
 function explain(
   page: DeskPage,
+  column: Column,
   input: GuideInput,
   frame: ClothFrame,
-  tiling: Tiling,
-  checks: TapedUpChecks
-): void {
+  tiling: Tiling
+): number {
   const shown = printed(tiling).length;
   const left = tiling.tiles.length - shown;
-  const { overlap } = tiling.rules;
   const islands = groups(tiling).length;
-  const half = page.width * 0.46;
-  let top = page.top;
+  let top = column.y;
   const put = (text: string, size: number, weight: 'regular' | 'bold' = 'regular'): void => {
-    for (const one of wrapText(text, size, half, weight, page.lettering)) {
-      page.put(one, page.left, top - size * 0.7, size, { weight });
+    for (const one of wrapText(text, size, column.width, weight, page.lettering)) {
+      page.put(one, column.x, top - size * 0.7, size, { weight });
       top -= size * 1.3;
     }
-    top -= 1.2;
+    top -= 1.5;
   };
   put(
     `${shown} ${shown === 1 ? 'sheet' : 'sheets'}${left > 0 ? `, ${left} blank ones left out (dotted)` : ''}`,
@@ -138,39 +156,38 @@ function explain(
   );
   if (shown > 1)
     put(
-      `Row by row from the near ${frame.near}, column by column from the zero line. Trim a sheet’s left and lower band off ` +
-        `along its window where it has a neighbour there, lay it over the neighbour’s edge by ${formatDecimal(overlap, 1)} mm ` +
-        'so that the rings and crosses meet, and tape it.',
-      3.5
+      `Letters count from the near ${frame.near}, numbers from the zero line. Where a sheet has a neighbour at its left or ` +
+        'below, trim its band off along the window. Lay it over that neighbour’s edge by ' +
+        `${formatDecimal(tiling.rules.overlap, 1)} mm, so that rings and crosses meet, and tape it.`,
+      3.6
     );
   if (islands > 1)
     put(
       `The sheets make ${islands} groups that don’t touch: place each by the distances printed at its left edge.`,
-      3.5,
+      3.6,
       'bold'
     );
-  tapedUp(page, input, checks);
+  return top;
 }
 
-/** The table of the four checks, on the right half. */
-function tapedUp(page: DeskPage, input: GuideInput, { checks }: TapedUpChecks): void {
-  const x = page.left + page.width * 0.52;
-  let y = page.top - 3.4;
+/** What a tape must read between the four targets. */
+function tapedUp(
+  page: DeskPage,
+  { x, y: top, width }: Column,
+  input: GuideInput,
+  { checks }: TapedUpChecks
+): void {
+  let y = top - 3.4;
   page.put('Taped up, a tape must read', x, y, 4.6, { weight: 'bold' });
   y -= 6.8;
   for (const check of checks) {
     page.put(`${check.from} – ${check.to}`, x, y, 4.2, { weight: 'bold' });
     page.put(check.name, x + 16, y, 3.8);
-    page.put(measured(check.length, input), page.right, y, 4.6, { weight: 'bold', align: 'end' });
+    page.put(measured(check.length, input), x + width, y, 4.6, { weight: 'bold', align: 'end' });
     y -= 6;
   }
-  for (const text of wrapText(
-    `More than ${TAPED_UP_LIMIT} mm off in any of them: do not cut. Take the joins apart, or print again at 100 %.`,
-    3.6,
-    page.right - x,
-    'bold',
-    page.lettering
-  )) {
+  const limit = `More than ${TAPED_UP_LIMIT} mm off in any of them: do not cut. Take the joins apart, or print again at 100 %.`;
+  for (const text of wrapText(limit, 3.6, width, 'bold', page.lettering)) {
     page.put(text, x, y, 3.6, { weight: 'bold' });
     y -= 4.8;
   }

@@ -33,11 +33,12 @@ export interface SheetWords {
   readonly identity: string;
   readonly strip: Strip;
   readonly released: boolean;
-  /** What the window's distances count from; null where the sheet is no part of the cloth. */
-  readonly from: { readonly x: string; readonly y: string } | null;
+  /** What the window's distances across count from; null where the sheet is no part of the cloth. */
+  readonly near: 'fold' | 'selvedge' | null;
 }
 
 const THIN = pen(0.2);
+const PALE = 0.91;
 const MEDIUM = pen(0.35);
 
 /** The page of `tile`. `spots` are what lies on the cloth; only those that reach the window are drawn. */
@@ -99,7 +100,7 @@ function behind(window: Box, name: string, released: boolean): Mark[] {
     words({ x: middle.x, y: middle.y - size * 0.35 }, name, size, {
       align: 'middle',
       weight: 'bold',
-      shade: 0.88
+      shade: PALE
     })
   ];
   if (released) return marks;
@@ -117,7 +118,7 @@ function behind(window: Box, name: string, released: boolean): Mark[] {
           },
           'NOT RELEASED',
           letters,
-          { align: 'middle', weight: 'bold', shade: 0.88 }
+          { align: 'middle', weight: 'bold', shade: PALE }
         )
       );
   return marks;
@@ -207,15 +208,15 @@ function sideBand(window: Box, margin: number, tile: Tile, say: SheetWords, lett
     );
   };
   put(say.identity, margin + 3, 'bold');
-  if (say.from) {
-    const distance = (value: number): string => `${formatDecimal(value, 1)} mm`;
-    put(
-      `Window’s lower left: ${distance(tile.window.minX)} ${say.from.x}, ${distance(tile.window.minY)} ${say.from.y}`,
-      margin + 7.2,
-      'regular'
-    );
-  }
+  if (say.near)
+    put(`Window’s lower left corner: ${cornerWords(tile.window, say.near)}`, margin + 7.2, 'regular');
   return marks;
+}
+
+/** Where the window's lower left corner lies on the cloth: 'zero line + 167 mm, near selvedge + 0 mm'. */
+function cornerWords({ minX, minY }: Box, near: 'fold' | 'selvedge'): string {
+  const along = `${formatDecimal(Math.abs(minX), 1)} mm ${minX < 0 ? 'before' : 'from'} the zero line`;
+  return `${along}, ${formatDecimal(Math.abs(minY), 1)} mm ${minY < 0 ? 'outside' : 'from'} the near ${near}`;
 }
 
 /** A join mark: a ring and a cross, and the names of the two sheets that meet there. */

@@ -196,7 +196,7 @@ function facts(
     ['Cloth', input.cloth],
     ['Width', `${length(strip.fullWidth)}, usable ${length(strip.usableWidth)}`],
     ['Up', sideUpWords(strip)],
-    ['Spread', `${spreadWords(strip)}, ${plies(strip) === 1 ? '1 ply' : `${plies(strip)} plies`}`],
+    ['Spread', `${spreadWords(strip)}, ${plies(strip) === 1 ? 'single ply' : `${plies(strip)} plies`}`],
     ['Nap', napWords(strip)],
     ['Length of the lay', length(frame.lengthUsed)],
     [

@@ -1,4 +1,5 @@
 import * as addressChanges from './address-changes';
+import * as guides from './guides';
 import { registerJob } from './jobs';
 import * as resets from './resets';
 import * as signUps from './sign-ups';
@@ -8,4 +9,5 @@ export function registerAllJobs(): void {
   registerJob('sign-up', signUps.job);
   registerJob('password-reset', resets.job);
   registerJob('address-change', addressChanges.job);
+  registerJob('guide', guides.job);
 }

@@ -155,13 +155,13 @@ export const sampleBook: PanelBook = Object.fromEntries(
 
 const where: [string, string, number, number, number, boolean][] = [
   ['skirt', 'g1', 15, 75, 0, false],
-  ['skirt', 'g1', 15, 1450, 0, true],
+  ['skirt', 'g1', 15, 1390, 0, true],
   ['front', 'g1', 1040, 20, 0, false],
-  ['front', 'g1', 1040, 560, 0, true],
-  ['sleeve', 'g1', 1030, 600, 0, false],
+  ['front', 'g1', 1040, 570, 0, true],
+  ['sleeve', 'g1', 1030, 620, 0, false],
   ['sleeve', 'g1', 1570, 1040, 180, true],
-  ['pocket', 'g1', 1500, 40, 0, false],
-  ['pocket', 'g1', 1500, 230, 90, false],
+  ['pocket', 'g1', 1505, 40, 0, false],
+  ['pocket', 'g1', 1655, 260, 90, false],
   ['loop', 'g1', 30, 620, 3.7, false]
 ];
 
