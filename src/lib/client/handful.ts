@@ -1,0 +1,59 @@
+import type { Outline, Point } from '$lib/geometry/point';
+import type { Live, LiveReport } from '$lib/lay/live';
+import type { LoosePiece } from '$lib/lay/needs';
+import { stepped, type TablePiece } from './table-pieces';
+
+/*
+ * The pieces that are held, lifted off the cloth or the Rail, and what the live check says of where they are.
+ */
+
+/** An overlap as it is drawn: where, how deep, with what. */
+export interface HeldOverlap {
+  readonly region: readonly Outline[];
+  readonly at: Point;
+  readonly depth: number;
+  readonly piece: string;
+  readonly other: string;
+}
+
+/** Most overlaps that are hatched in one frame; the deepest first. */
+const MOST_HATCHED = 12;
+
+export class Handful {
+  readonly ids: readonly string[];
+  #step: Point | null = null;
+  #report: LiveReport | null = null;
+
+  constructor(
+    /** As they lay when they were taken; from the Rail: with their middle under the pointer. */
+    readonly pieces: readonly TablePiece[],
+    /** The hanger that the piece came from; null when the pieces came off the cloth. */
+    readonly fromRail: LoosePiece | null,
+    private readonly live: Live
+  ) {
+    this.ids = pieces.map(({ id }) => id);
+  }
+
+  /** What the check says with the pieces carried by `step`. */
+  report(step: Point): LiveReport {
+    if (this.#report && this.#step?.x === step.x && this.#step.y === step.y) return this.#report;
+    this.#report = this.live.moveTo(
+      this.ids,
+      this.pieces.map(({ placement }) => stepped(placement, step))
+    );
+    this.#step = step;
+    return this.#report;
+  }
+
+  /** Overlaps of the held pieces, deepest first, with their regions. */
+  overlaps(step: Point): HeldOverlap[] {
+    const pairs = new Map<string, Omit<HeldOverlap, 'region'>>();
+    for (const piece of this.report(step).pieces)
+      for (const { with: other, depth, at } of piece.overlaps)
+        pairs.set([piece.id, other].sort().join(), { at, depth, piece: piece.id, other });
+    return [...pairs.values()]
+      .sort((a, b) => b.depth - a.depth)
+      .slice(0, MOST_HATCHED)
+      .map((pair) => ({ ...pair, region: this.live.regionOf(pair.piece, pair.other).region }));
+  }
+}

@@ -1,0 +1,256 @@
+import { seen, toScreen, type Viewport } from '$lib/client/viewport';
+import { sideUp, type Strip } from '$lib/cloth/strip';
+import { dyes, inkOn, mix } from './dyes';
+
+/*
+ * The cloth as it lies: its colour, threads along the warp, the nap as barbs, selvedges, zero end, the roll at the
+ * open end, end allowances and flaws. What a colour says, a shape says too.
+ */
+
+export interface ClothLook {
+  readonly strip: Strip;
+  readonly colour: string;
+  /** How far the cloth is drawn, in millimetres from its zero end. */
+  readonly drawnTo: number;
+}
+
+/** How far to draw cloth of open length, so that work has room beyond what is used. */
+export function drawnLength(strip: Strip, lengthUsed: number, leastLength: number): number {
+  if (strip.length !== null) return strip.length;
+  const wanted = Math.max(lengthUsed, leastLength, 500) * 1.12 + 300;
+  // In steps, so that the roll does not creep with each move.
+  return Math.ceil(wanted / 250) * 250;
+}
+
+/** Fills the rectangle of the cloth between two places. */
+function rectangle(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  fromX: number,
+  fromY: number,
+  toX: number,
+  toY: number
+): { left: number; top: number; width: number; height: number } {
+  const a = toScreen(view, { x: fromX, y: fromY });
+  const b = toScreen(view, { x: toX, y: toY });
+  const left = Math.min(a.left, b.left);
+  const top = Math.min(a.top, b.top);
+  const width = Math.abs(b.left - a.left);
+  const height = Math.abs(b.top - a.top);
+  ctx.fillRect(left, top, width, height);
+  return { left, top, width, height };
+}
+
+/** Draws the cloth. The canvas is in pixels. */
+export function drawCloth(ctx: CanvasRenderingContext2D, view: Viewport, look: ClothLook): void {
+  const { strip, colour, drawnTo } = look;
+  const width = strip.usableWidth;
+  const selvedge = Math.max(6 / view.scale, (strip.fullWidth - width) / 2);
+  const start = -strip.endAllowance.start;
+  const end = strip.length === null ? drawnTo : strip.length + strip.endAllowance.end;
+
+  ctx.fillStyle = 'rgba(35, 38, 43, 0.10)';
+  ctx.save();
+  ctx.translate(3, 5);
+  rectangle(ctx, view, start, -selvedge, end, width + selvedge);
+  ctx.restore();
+
+  ctx.fillStyle = colour;
+  rectangle(ctx, view, start, -selvedge, end, width + selvedge);
+  drawThreads(ctx, view, look, start, end);
+  drawSelvedge(ctx, view, colour, start, end, -selvedge, 0);
+  drawSelvedge(ctx, view, colour, start, end, width, width + selvedge);
+
+  // Before the zero end lies the allowance that is cut square or lost.
+  ctx.fillStyle = hatch(ctx, inkOn(colour, 0.28));
+  if (strip.endAllowance.start > 0) rectangle(ctx, view, start, -selvedge, 0, width + selvedge);
+  if (strip.length !== null && strip.endAllowance.end > 0)
+    rectangle(ctx, view, strip.length, -selvedge, end, width + selvedge);
+
+  chalkLine(ctx, view, 0, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
+  if (strip.length === null) drawRoll(ctx, view, colour, end, -selvedge, width + selvedge);
+  else chalkLine(ctx, view, strip.length, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
+  for (const flaw of strip.flaws) drawFlaw(ctx, view, flaw.x, flaw.y, flaw.radius);
+}
+
+function chalkLine(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  x: number,
+  fromY: number,
+  toY: number,
+  ink: string,
+  thick: number
+): void {
+  const a = toScreen(view, { x, y: fromY });
+  const b = toScreen(view, { x, y: toY });
+  ctx.strokeStyle = ink;
+  ctx.lineWidth = thick;
+  ctx.beginPath();
+  ctx.moveTo(a.left, a.top);
+  ctx.lineTo(b.left, b.top);
+  ctx.stroke();
+}
+
+/** Warp threads as broken strokes along the grain; on napped cloth each carries a barb that points with the nap. */
+function drawThreads(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  { strip, colour }: ClothLook,
+  start: number,
+  end: number
+): void {
+  const inSight = seen(view, 40);
+  // A pattern of threads that keeps its density on the screen at every zoom.
+  const octave = 2 ** Math.round(Math.log2(0.22 / view.scale));
+  const gap = 120 * octave;
+  const stride = 360 * octave;
+  const fromX = Math.max(start, inSight.minX);
+  const toX = Math.min(end, inSight.maxX);
+  const napped = strip.nap !== 'none';
+  const towards = strip.spread[0]!.layers[0]!.nap === 'along' ? 1 : -1;
+  const barb = 18 * octave;
+  const path = new Path2D();
+  const line = (x1: number, y1: number, x2: number, y2: number): void => {
+    const a = toScreen(view, { x: x1, y: y1 });
+    const b = toScreen(view, { x: x2, y: y2 });
+    path.moveTo(a.left, a.top);
+    path.lineTo(b.left, b.top);
+  };
+  const firstRow = Math.max(0, Math.floor(inSight.minY / gap));
+  const lastRow = Math.min(Math.floor(strip.usableWidth / gap), Math.ceil(inSight.maxY / gap));
+  for (let row = firstRow; row <= lastRow; row++) {
+    const y = (row + 0.5) * gap;
+    if (y >= strip.usableWidth) continue;
+    const shift = row % 2 === 0 ? 0 : stride / 2;
+    for (let k = Math.floor((fromX - shift) / stride); k * stride + shift < toX; k++) {
+      const x = k * stride + shift;
+      const x1 = Math.max(start, x);
+      const x2 = Math.min(end, x + stride * 0.42);
+      if (x2 <= x1) continue;
+      line(x1, y, x2, y);
+      if (!napped) continue;
+      const tip = towards === 1 ? x2 : x1;
+      line(tip - towards * barb, y + barb * 0.55, tip, y);
+      line(tip - towards * barb, y - barb * 0.55, tip, y);
+    }
+  }
+  ctx.strokeStyle = inkOn(colour, napped ? 0.26 : 0.16);
+  ctx.lineWidth = 1;
+  ctx.stroke(path);
+}
+
+/** A selvedge: denser cloth with the pin holes of the loom along it. */
+function drawSelvedge(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  colour: string,
+  start: number,
+  end: number,
+  from: number,
+  to: number
+): void {
+  ctx.fillStyle = mix(colour, dyes.walnut, 0.22);
+  const { height, width } = rectangle(ctx, view, start, from, end, to);
+  if (Math.min(height, width) < 5) return;
+  const inSight = seen(view, 20);
+  const step = 25 * 2 ** Math.max(0, Math.round(Math.log2(0.5 / view.scale)));
+  ctx.fillStyle = inkOn(colour, 0.5);
+  const y = (from + to) / 2;
+  const first = Math.ceil(Math.max(start, inSight.minX) / step);
+  for (let k = first; k * step < Math.min(end, inSight.maxX); k++) {
+    const at = toScreen(view, { x: k * step, y });
+    ctx.fillRect(at.left - 1, at.top - 1, 2, 2);
+  }
+}
+
+/** Cloth that is still on its roll, beyond the open end. */
+function drawRoll(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  colour: string,
+  end: number,
+  fromY: number,
+  toY: number
+): void {
+  const thick = Math.min(46, Math.max(16, 90 * view.scale));
+  const a = toScreen(view, { x: end, y: fromY });
+  const b = toScreen(view, { x: end, y: toY });
+  const across = view.lie === 'across';
+  const left = Math.min(a.left, b.left);
+  const top = Math.min(a.top, b.top);
+  const width = across ? thick : Math.abs(b.left - a.left);
+  const height = across ? Math.abs(b.top - a.top) : thick;
+  const shade = across
+    ? ctx.createLinearGradient(left, 0, left + width, 0)
+    : ctx.createLinearGradient(0, top, 0, top + height);
+  shade.addColorStop(0, mix(colour, dyes.charcoal, 0.2));
+  shade.addColorStop(0.3, mix(colour, dyes.bleached, 0.45));
+  shade.addColorStop(0.65, colour);
+  shade.addColorStop(1, mix(colour, dyes.charcoal, 0.42));
+  ctx.fillStyle = shade;
+  const out = 7;
+  ctx.beginPath();
+  if (across) ctx.roundRect(left, top - out, width, height + 2 * out, 6);
+  else ctx.roundRect(left - out, top, width + 2 * out, height, 6);
+  ctx.fill();
+  ctx.strokeStyle = inkOn(colour, 0.4);
+  ctx.lineWidth = 1;
+  ctx.stroke();
+}
+
+function drawFlaw(ctx: CanvasRenderingContext2D, view: Viewport, x: number, y: number, radius: number): void {
+  const at = toScreen(view, { x, y });
+  const r = Math.max(5, radius * view.scale);
+  ctx.strokeStyle = dyes.madder;
+  ctx.lineWidth = 1.5;
+  ctx.beginPath();
+  ctx.arc(at.left, at.top, r, 0, 2 * Math.PI);
+  ctx.moveTo(at.left - r * 0.7, at.top - r * 0.7);
+  ctx.lineTo(at.left + r * 0.7, at.top + r * 0.7);
+  ctx.moveTo(at.left + r * 0.7, at.top - r * 0.7);
+  ctx.lineTo(at.left - r * 0.7, at.top + r * 0.7);
+  ctx.stroke();
+}
+
+const hatches = new Map<string, HTMLCanvasElement>();
+
+/** Slanting strokes of one colour, as a pattern. */
+export function hatch(ctx: CanvasRenderingContext2D, ink: string, gap = 8): CanvasPattern | string {
+  const key = `${ink}|${gap}`;
+  let tile = hatches.get(key);
+  if (!tile) {
+    tile = document.createElement('canvas');
+    tile.width = tile.height = gap;
+    const t = tile.getContext('2d');
+    if (!t) return ink;
+    t.strokeStyle = ink;
+    t.lineWidth = 1.2;
+    for (const shift of [-gap, 0, gap]) {
+      t.beginPath();
+      t.moveTo(shift - 1, gap + 1);
+      t.lineTo(shift + gap + 1, -1);
+      t.stroke();
+    }
+    hatches.set(key, tile);
+  }
+  return ctx.createPattern(tile, 'repeat') ?? ink;
+}
+
+/** Which side of the cloth is up, in words. */
+export function sideUpWords(strip: Strip): string {
+  if (strip.sidesAlike) return 'Both sides of the cloth are alike';
+  return sideUp(strip) === 'right' ? 'Right side of the cloth up' : 'Wrong side of the cloth up';
+}
+
+/** The nap, in words. */
+export function napWords(strip: Strip): string {
+  switch (strip.nap) {
+    case 'none':
+      return 'No nap';
+    case 'oneWay':
+      return 'Nap runs one way, as the barbs point';
+    case 'garmentWay':
+      return 'Nap: each garment one way';
+  }
+}
