@@ -26,6 +26,8 @@ const environment = z.object({
   WARPWISE_SMTP_PLAIN: flag,
   WARPWISE_MAIL_FROM: z.string().min(3).default('Warpwise <warpwise@localhost>'),
   WARPWISE_LOG_LEVEL: z.enum(['trace', 'debug', 'info', 'warn', 'error', 'fatal', 'silent']).default('info'),
+  /** Fills the invented workroom of the demo at start. Its sign-ins are known to everybody: never where real studios live. */
+  WARPWISE_DEMO: flag,
   /** On in the demo only: door pages then say where the mails of the local fake can be read. */
   WARPWISE_DEMO_MAIL_PAGE: z.url({ protocol: /^https?$/ }).optional()
 });
@@ -39,6 +41,7 @@ export interface Config {
   readonly smtpPlain: boolean;
   readonly mailFrom: string;
   readonly logLevel: z.infer<typeof environment>['WARPWISE_LOG_LEVEL'];
+  readonly demo: boolean;
   readonly demoMailPage: string | null;
 }
 
@@ -60,6 +63,7 @@ export function readConfig(variables: Readonly<Record<string, string | undefined
     smtpPlain: env.WARPWISE_SMTP_PLAIN ?? false,
     mailFrom: env.WARPWISE_MAIL_FROM,
     logLevel: env.WARPWISE_LOG_LEVEL,
+    demo: env.WARPWISE_DEMO ?? false,
     demoMailPage: env.WARPWISE_DEMO_MAIL_PAGE ?? null
   };
 }

@@ -14,7 +14,7 @@ import * as layRevisions from './lay-revisions';
 import * as lays from './lays';
 import * as orders from './orders';
 import { hashPassword } from './passwords';
-import type { Scope } from './scope';
+import { studioScope, type Scope } from './scope';
 import * as studios from './studios';
 
 /*
@@ -231,6 +231,7 @@ export async function seed(
     await database()('studios').where({ id: studio }).update({ is_demo: 1 });
     for (const { id, role } of ids.slice(1)) await studios.join(studio, id, role, undefined, now);
   }
-  await fill({ studio, user: owner, role: 'owner' }, now);
+  // The application lays, not the owner: the owner's first sign-in still begins at the demo order.
+  await fill(studioScope(studio), now);
   return { studio, signIns: content.people };
 }

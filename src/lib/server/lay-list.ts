@@ -145,3 +145,11 @@ export async function ofItem(
       state: 'lays.state'
     });
 }
+
+/** Whether the person has ever saved a lay in this studio. */
+export async function hasSaved(scope: Scope): Promise<boolean> {
+  const saved = await database()('lay_saves')
+    .where({ studio_id: scope.studio, saved_by: scope.user })
+    .first('save_id');
+  return saved !== undefined;
+}

@@ -1,5 +1,6 @@
 import { config } from './config';
 import { migrate, openDatabase, useDatabase } from './database';
+import * as demo from './demo';
 import { startTidying } from './housekeeping';
 import { registerAllJobs } from './job-kinds';
 import { JobRunner } from './job-runner';
@@ -17,6 +18,7 @@ export async function startServer(): Promise<void> {
   const db = openDatabase(config.databaseFile);
   await migrate(db);
   useDatabase(db);
+  if (config.demo) await demo.seed();
 
   registerAllJobs();
   const runner = new JobRunner();
