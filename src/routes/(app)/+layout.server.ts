@@ -1,8 +1,7 @@
 import { redirect } from '@sveltejs/kit';
 import { may } from '$lib/server/permissions';
+import { roleWords } from '$lib/server/door-mails';
 import type { LayoutServerLoad } from './$types';
-
-const roleWords = { owner: 'owner', patternMaker: 'pattern maker', cutter: 'cutter' } as const;
 
 /** Who and where the shell shows. Each page still asks for its own permission. */
 export const load: LayoutServerLoad = ({ locals, url }) => {
@@ -21,6 +20,7 @@ export const load: LayoutServerLoad = ({ locals, url }) => {
   return {
     places,
     personName: person.user.name,
+    manages: scope !== null && may(scope.role, 'studio: manage'),
     role: scope ? roleWords[scope.role] : null,
     studio: studio && {
       name: studio.name,
