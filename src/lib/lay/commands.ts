@@ -1,6 +1,6 @@
 import { boundingBox } from '$lib/geometry/polygon';
 import { cosSin, placeOutline, snapPlacement, snapTurn, type Placement } from '$lib/geometry/placement';
-import type { Box, Point } from '$lib/geometry/point';
+import { snap, type Box, type Point } from '$lib/geometry/point';
 import type { Degrees, Millimetres } from '$lib/units/measure';
 import type { LayDocument, LayPlacement } from './document';
 import { balance, panelOfPlacement, type LoosePiece } from './needs';
@@ -263,7 +263,7 @@ export interface Exact {
 /** What `setExact` would have to be given to change nothing. */
 export function exactOf(panel: LayPanel, placement: Placement): Required<Exact> {
   const box = boxOf(panel, placement);
-  return { fromStart: box.minX, fromSelvedge: box.minY, turn: placement.turn };
+  return { fromStart: snap(box.minX), fromSelvedge: snap(box.minY), turn: placement.turn };
 }
 
 /** Lays one piece at exact distances and an exact turn; a turn beyond the grain tolerance is refused. */

@@ -49,7 +49,7 @@ export function leastLength(
   const queue = sideBySide(wanted, strip);
   if (queue.length > best.length)
     best = { length: queue.length, reason: { kind: 'side-by-side', panels: queue.panels } };
-  return { ...best, length: Math.max(0, Math.floor(best.length * 1000 - 1e-6) / 1000) };
+  return { ...best, length: Math.max(0, Math.floor(best.length * 1000 + 1e-6) / 1000) };
 }
 
 function wantedPanels(
