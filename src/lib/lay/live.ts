@@ -154,6 +154,8 @@ interface Moved {
 class Gesture {
   readonly #ids: readonly string[];
   readonly #fixed: readonly PlacedPiece[];
+  /** Distance of each fixed box from the piece that is being looked at; kept to spare the memory. */
+  readonly #apart: Float64Array;
   /** How far the pieces that stay reach along the warp. */
   readonly reach: Millimetres;
   #body: { readonly first: readonly Placement[]; readonly overlaps: readonly Among[] } | null = null;
@@ -162,6 +164,7 @@ class Gesture {
     const moving = new Set(ids);
     this.#ids = [...ids];
     this.#fixed = all.filter(({ placement }) => !moving.has(placement.id));
+    this.#apart = new Float64Array(this.#fixed.length);
     this.reach = this.#fixed.reduce((most, { outline }) => Math.max(most, outline.box.maxX), 0);
   }
 
@@ -175,28 +178,36 @@ class Gesture {
     clearance: Millimetres
   ): { overlaps: LiveOverlap[]; nearest: LiveNeighbour | null } {
     const overlaps: LiveOverlap[] = [];
-    const apart = this.#fixed.map((piece) => ({ piece, least: boxDistance(own.box, piece.outline.box) }));
-    for (const { piece, least } of apart) {
-      if (least > 0) continue;
+    const apart = this.#apart;
+    let first = 0;
+    this.#fixed.forEach((piece, i) => {
+      const least = boxDistance(own.box, piece.outline.box);
+      apart[i] = least;
+      if (least < apart[first]!) first = i;
+      if (least > 0) return;
       const { depth, at } = overlapDepth(own, piece.outline);
       if (depth > TOUCHING && at) overlaps.push({ with: piece.placement.id, depth, at });
-    }
-    if (overlaps.length > 0) return { overlaps, nearest: null };
-    let nearest: LiveNeighbour | null = null;
-    apart.sort((a, b) => a.least - b.least);
-    for (const { piece, least } of apart) {
-      if (nearest && least >= nearest.distance) break;
-      const { distance, from, to } = outlineDistance(own, piece.outline);
-      if (!nearest || distance < nearest.distance)
-        nearest = {
-          id: piece.placement.id,
-          distance,
-          from,
-          to,
-          tooNear: distance < clearance - CLEARANCE_SLACK
-        };
-    }
-    return { overlaps, nearest };
+    });
+    if (overlaps.length > 0 || this.#fixed.length === 0) return { overlaps, nearest: null };
+
+    // The piece with the nearest box first: its distance leaves out almost all others.
+    let nearest = this.#fixed[first]!;
+    let best = outlineDistance(own, nearest.outline);
+    this.#fixed.forEach((piece, i) => {
+      if (i === first || apart[i]! >= best.distance) return;
+      const found = outlineDistance(own, piece.outline);
+      if (found.distance >= best.distance) return;
+      nearest = piece;
+      best = found;
+    });
+    return {
+      overlaps,
+      nearest: {
+        id: nearest.placement.id,
+        ...best,
+        tooNear: best.distance < clearance - CLEARANCE_SLACK
+      }
+    };
   }
 
   /**
