@@ -45,7 +45,9 @@ export interface ListedOrder {
   readonly stage: Stage;
   readonly updatedAt: number;
   readonly garments: number;
-  /** How many of its cloths have no released lay yet. */
+  /** How many cloths its lines take. */
+  readonly cloths: number;
+  /** How many of them have no released lay yet. */
   readonly clothsToLay: number;
 }
 
@@ -125,6 +127,7 @@ export async function list(
       stage: row.stage,
       updatedAt: row.updated_at,
       garments: Number(garments.find((one) => one.order_id === row.id)?.n ?? 0),
+      cloths: cloths.get(row.id)?.length ?? 0,
       clothsToLay: (cloths.get(row.id) ?? []).filter((cloth) => !cloth.released).length
     }))
   };
