@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { openKeptLay, shortName } from '$lib/lay/kept-lay';
-import { newLay, openLayDocument, UnreadableDocument, upgraded } from '$lib/lay/stored-lay';
+import { newLay, openLayDocument, UnreadableDocument, upgraded, type Upgrade } from '$lib/lay/stored-lay';
 import { bookOf, ell, garment, lay, panel, placement, strip } from './workroom';
 
 const book = bookOf(panel('ell', ell, { paired: true, howMany: 2 }));
@@ -52,9 +52,9 @@ describe('the door of lay documents', () => {
   });
 
   it('brings older schemas up step by step', () => {
-    const steps = new Map([
-      [1, (old: Readonly<Record<string, unknown>>) => ({ ...old, pins: [] })],
-      [2, ({ pins, ...old }: Readonly<Record<string, unknown>>) => ({ ...old, weights: pins })]
+    const steps = new Map<number, Upgrade>([
+      [1, (old) => ({ ...old, pins: [] })],
+      [2, ({ pins, ...old }) => ({ ...old, weights: pins })]
     ]);
     expect(upgraded({ schema: 1, name: 'x' }, 3, steps)).toEqual({ schema: 3, name: 'x', weights: [] });
     expect(upgraded({ schema: 2, pins: [1] }, 3, steps)).toEqual({ schema: 3, weights: [1] });
