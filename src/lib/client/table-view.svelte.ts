@@ -5,12 +5,13 @@ import { boxAround, pieceAt, piecesWithin } from './table-pieces';
 import {
   centred,
   fitted,
-  lieFor,
   panned,
   resized,
   toCloth,
+  toScreen,
   turnedTable,
   zoomed,
+  type Lie,
   type ScreenPoint,
   type Viewport
 } from './viewport';
@@ -88,16 +89,15 @@ export class TableView implements Table {
 
   // Looking
 
-  /** The canvas has this size now. */
-  resize(width: number, height: number): void {
+  /** The canvas has this size now, on a screen that is wide (the warp lies across) or tall. */
+  resize(width: number, height: number, lie: Lie): void {
     if (width < 2 || height < 2) return;
     if (!this.#fittedOnce) {
       this.#fittedOnce = true;
-      this.view = { ...this.view, width, height, lie: lieFor(width, height) };
-      this.fit();
+      this.view = { ...this.view, width, height, lie };
+      this.begin();
       return;
     }
-    const lie = lieFor(width, height);
     this.view = resized(this.view, width, height);
     if (!this.#turnedByHand && lie !== this.view.lie) {
       this.view = turnedTable(this.view);
@@ -105,7 +105,20 @@ export class TableView implements Table {
     }
   }
 
-  /** All of the cloth, its whole width and as much length as keeps pieces legible. */
+  /** The first look: all of the cloth, or its whole width at the zero end where all would be too small to read. */
+  begin(): void {
+    this.fit();
+    const whole = this.clothBox();
+    const width = { ...whole, maxX: whole.minX + (whole.maxY - whole.minY) * 0.3 };
+    const padding = this.#padding();
+    const near = fitted(this.view, width, padding);
+    if (this.view.scale >= near.scale * 0.45) return;
+    const across = near.lie === 'across';
+    const zero = toScreen(near, { x: whole.minX, y: 0 });
+    this.view = panned(near, across ? padding.left - zero.left : 0, across ? 0 : padding.top - zero.top);
+  }
+
+  /** All of the cloth. */
   fit(): void {
     this.view = fitted(this.view, this.clothBox(), this.#padding());
   }

@@ -90,12 +90,18 @@ function drawLengthUsed(ctx: CanvasRenderingContext2D, view: Viewport, overlay: 
   if (overlay.lengthUsed <= 0) return;
   const a = toScreen(view, { x: overlay.lengthUsed, y: -20 });
   const b = toScreen(view, { x: overlay.lengthUsed, y: overlay.strip.usableWidth + 20 });
-  ctx.strokeStyle = dyes.woad;
-  ctx.lineWidth = 1.5;
-  ctx.setLineDash([9, 5]);
+  const [at, extent] = view.lie === 'across' ? [a.left, view.width] : [a.top, view.height];
+  if (at < 0 || at > extent) return;
   ctx.beginPath();
   ctx.moveTo(a.left, a.top);
   ctx.lineTo(b.left, b.top);
+  // A light casing keeps the line to be seen on any cloth.
+  ctx.strokeStyle = dyes.bleached;
+  ctx.lineWidth = 3.5;
+  ctx.stroke();
+  ctx.strokeStyle = dyes.woad;
+  ctx.lineWidth = 1.75;
+  ctx.setLineDash([9, 5]);
   ctx.stroke();
   ctx.setLineDash([]);
   const far = view.lie === 'across' ? { left: b.left, top: b.top - 12 } : { left: b.left + 8, top: b.top };

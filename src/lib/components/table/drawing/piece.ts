@@ -200,6 +200,8 @@ function drawLabel(
   ctx.textBaseline = 'middle';
   if (size === null) {
     if (Math.min(width, height) < 12) return;
+    ctx.fillStyle = look.paper;
+    ctx.fillRect(left - 6, top - 7, 12, 14);
     ctx.font = `600 11px ${FACE}`;
     ctx.fillStyle = look.dye;
     ctx.fillText(look.letter, left, top);
