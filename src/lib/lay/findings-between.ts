@@ -1,5 +1,5 @@
 import { clearBy, outlineDistance } from '$lib/geometry/distance';
-import { neighbourPairs } from '$lib/geometry/neighbours';
+import { BoxIndex } from '$lib/geometry/neighbours';
 import { overlapDepth, type Depth } from '$lib/geometry/overlap';
 import { overlapRegion } from '$lib/geometry/overlap-region';
 import type { Box } from '$lib/geometry/point';
@@ -15,6 +15,12 @@ import { millimetres, nameOf } from './wording';
 /** How short of the clearance two pieces may lie before it counts: clearances are exact to this. */
 export const CLEARANCE_SLACK = 0.01;
 
+/**
+ * So many findings between pieces are listed, no more: a heap of thousands of pieces on one place must not hold up the
+ * server, and one finding is enough to stop a release. The next ones show once these are mended.
+ */
+export const MOST_BETWEEN = 500;
+
 /** What is wrong between two pieces: they overlap, or lie nearer than the clearance. */
 export function findingsBetween(
   document: LayDocument,
@@ -25,13 +31,17 @@ export function findingsBetween(
   const least = clearance - CLEARANCE_SLACK;
   const findings: Finding[] = [];
   const boxes = placed.map(({ outline }) => outline.box);
-  for (const [i, j] of neighbourPairs(boxes, clearance)) {
-    const [a, b] = [placed[i]!, placed[j]!];
-    if (least > 0 && clearBy(a.outline, b.outline, least)) continue;
-    const depth = overlapDepth(a.outline, b.outline);
-    if (depth.depth > TOUCHING) findings.push(overlap(document, book, a, b, depth));
-    else if (least > 0) findings.push(tooNear(document, book, a, b));
-  }
+  const index = new BoxIndex(boxes);
+  for (const [i, a] of placed.entries())
+    for (const j of index.near(boxes[i]!, clearance)) {
+      if (j <= i) continue;
+      const b = placed[j]!;
+      if (least > 0 && clearBy(a.outline, b.outline, least)) continue;
+      const depth = overlapDepth(a.outline, b.outline);
+      if (depth.depth > TOUCHING) findings.push(overlap(document, book, a, b, depth));
+      else if (least > 0) findings.push(tooNear(document, book, a, b));
+      if (findings.length >= MOST_BETWEEN) return findings;
+    }
   return findings;
 }
 
