@@ -1,9 +1,10 @@
 import { sideUp, type Strip } from '$lib/cloth/strip';
 import type { Box } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
-import { formatLength, type LengthUnit } from '$lib/units/length';
+import type { LengthUnit } from '$lib/units/length';
 import { line, pen, words, type Mark } from './drawing';
 import type { LaidPiece } from './laid-piece';
+import { onTape } from './measure-words';
 
 /*
  * The cloth around the pieces: selvedges or fold, zero and end line, and its words.
@@ -94,7 +95,7 @@ export function drawFrame(frame: ClothFrame, unit: LengthUnit): Mark[] {
     marks.push(
       edgeWords(
         { x: lengthUsed, y },
-        `end line, ${formatLength(lengthUsed, unit, { decimals: 1 })}`,
+        `end line, ${onTape(lengthUsed, unit)}`,
         90,
         cloth.maxX - lengthUsed,
         -1

@@ -8,6 +8,9 @@ import { customPaper, LONGEST_SIDE, paperNames, papers, SHORTEST_SIDE, type Pape
 export const guideKinds = ['whole', 'sheets', 'panels'] as const;
 export type GuideKind = (typeof guideKinds)[number];
 
+/** What a sheet must leave between its margins for the checks and the words. */
+const LEAST_BETWEEN = 170;
+
 const side = z
   .number()
   .min(SHORTEST_SIDE, `A sheet needs at least ${SHORTEST_SIDE} mm a side`)
@@ -33,11 +36,11 @@ export const guideChoiceSchema = z
     if (choice.kind !== 'whole' && choice.paper === 'custom' && !choice.custom)
       context.addIssue({ code: 'custom', path: ['custom'], message: 'Give the width and the height' });
     const paper = paperOf(choice);
-    if (paper && paper.width - 2 * choice.margin - choice.overlap < 120)
+    if (paper && paper.width - 2 * choice.margin < LEAST_BETWEEN)
       context.addIssue({
         code: 'custom',
         path: ['margin'],
-        message: `${paper.name} leaves less than 120 mm between these margins and the overlap`
+        message: `${paper.name} leaves less than ${LEAST_BETWEEN} mm between these margins`
       });
   });
 export type GuideChoice = z.infer<typeof guideChoiceSchema>;

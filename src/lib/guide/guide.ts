@@ -2,7 +2,7 @@ import { boundingBox, growBox } from '$lib/geometry/polygon';
 import type { Box, Outline } from '$lib/geometry/point';
 import { clothFrame, drawFrame, plies, type ClothFrame } from './cloth-frame';
 import type { Desk } from './desk-page';
-import type { Lettering, Page } from './drawing';
+import type { Lettering, Mark, Page } from './drawing';
 import { paperOf, type GuideChoice } from './guide-choice';
 import type { GuideInput } from './guide-input';
 import { layPieces, lonePanels, type LaidPiece } from './laid-piece';
@@ -166,7 +166,7 @@ function planCloth({ input, choice, pieces, frame, desk, missing, lettering }: C
   const checks = tapedUpChecks(tiling, frame.extent);
   const joins = joinMarks(tiling);
   const spots: Spot[] = [
-    { box: frame.extent, marks: drawFrame(frame, input.lengthUnit) },
+    ...drawFrame(frame, input.lengthUnit).map(spotOfMark),
     ...pieces.map((piece) => spotOf(piece, labelWords(input), lettering))
   ];
   const say: SheetWords = {
@@ -200,6 +200,21 @@ function spotOf(piece: LaidPiece, label: LabelWords, lettering: Lettering): Spot
     box: boundingBox([...piece.cut, ...notches, piece.grain.from, piece.grain.to]),
     marks: drawPiece(piece, label, lettering)
   };
+}
+
+/** How far words along an edge reach from where they start, at most. */
+const WORDS_REACH = 120;
+
+/** One mark of the frame by itself, so that a sheet draws only those of its own stretch. */
+function spotOfMark(mark: Mark): Spot {
+  switch (mark.kind) {
+    case 'stroke':
+      return { box: boundingBox(mark.points), marks: [mark] };
+    case 'surface':
+      return { box: boundingBox(mark.outlines.flat()), marks: [mark] };
+    case 'words':
+      return { box: growBox(boundingBox([mark.at]), WORDS_REACH), marks: [mark] };
+  }
 }
 
 /** Air around a panel on its own page, so that its line does not lie on the window's edge. */

@@ -1,12 +1,13 @@
 import { boundingBox } from '$lib/geometry/polygon';
 import type { Point } from '$lib/geometry/point';
-import { formatDecimal, formatLength, type LengthUnit } from '$lib/units/length';
+import { formatDecimal, type LengthUnit } from '$lib/units/length';
 import type { ClothFrame } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
 import { arrowHead, line, pen, surface, words, type Lettering, type Mark, type Page } from './drawing';
 import type { GuideInput } from './guide-input';
 import { placeLabel } from './label-place';
 import type { LaidPiece } from './laid-piece';
+import { onTape } from './measure-words';
 import { handWords } from './piece-drawing';
 import { identity, notice } from './ticket';
 
@@ -60,7 +61,7 @@ export function drawOverview(
   page.put(
     `1 : ${formatDecimal(1 / scale, 1)}. Distances are from the zero line and from the near ${frame.near}${
       frame.cloth.minY < 0
-        ? `’s line, ${formatLength(-frame.cloth.minY, input.lengthUnit, { decimals: 1 })} inside the cloth’s edge`
+        ? `’s line, ${onTape(-frame.cloth.minY, input.lengthUnit)} inside the cloth’s edge`
         : ''
     }. Grain lines run from their tail to their head.`,
     page.left,
@@ -103,7 +104,7 @@ function columns(width: number, unit: LengthUnit) {
 
 /** A row of distances: both ends of the grain line, then the bounding edges, from the zero line and the near selvedge. */
 function rowOf(unit: LengthUnit): (piece: LaidPiece) => string[] {
-  const length = (mm: number): string => formatLength(mm, unit, { bare: true, decimals: 1, fixed: true });
+  const length = (mm: number): string => onTape(mm, unit, { bare: true, fixed: true });
   return (piece) => [
     String(piece.number),
     [piece.panel, handWords(piece.hand)].filter(Boolean).join(', '),

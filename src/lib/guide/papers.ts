@@ -13,8 +13,8 @@ export const UNITS_PER_MM = 72 / INCH;
 /** The longest side that a PDF page may have everywhere: 14,400 units, 200 inches. */
 export const LONGEST_SIDE: Millimetres = 200 * INCH;
 
-/** The shortest side that still holds a check of 100 mm beside its bands. */
-export const SHORTEST_SIDE: Millimetres = 150;
+/** The shortest side that still holds the bands with their check of 100 mm and their words. */
+export const SHORTEST_SIDE: Millimetres = 200;
 
 export const paperNames = [
   'A4',

@@ -19,6 +19,8 @@ interface Face {
   readonly font: PDFFont;
   readonly has: (codePoint: number) => boolean;
   readonly widths: Map<string, number>;
+  /** Text that was set before, as the file writes it, with its width at size 1: the same words stand on every sheet. */
+  readonly set: Map<string, { readonly code: string; readonly width: number }>;
 }
 
 /** Width of the box that stands for a letter that the fonts lack, as a share of the size. */
@@ -52,7 +54,8 @@ export class PdfWriter implements Lettering {
       return {
         font: await document.embedFont(bytes, { subset: true }),
         has: (codePoint) => read.hasGlyphForCodePoint(codePoint),
-        widths: new Map()
+        widths: new Map(),
+        set: new Map()
       };
     };
     return new PdfWriter(document, { regular: await face(fonts.regular), bold: await face(fonts.bold) });
@@ -148,13 +151,14 @@ export class PdfWriter implements Lettering {
         along += mark.size * BOX;
         continue;
       }
+      const set = setText(face, run.text);
       const start = at(along, 0);
       const name = mark.weight === 'bold' ? 'B' : 'R';
       paper.node.setFontDictionary(PDFName.of(name), face.font.ref);
       out.push(`BT /${name} ${number(mark.size)} Tf ${number(mark.shade)} g `);
       out.push(`${number(cos, 8)} ${number(sin, 8)} ${number(-sin, 8)} ${number(cos, 8)} `);
-      out.push(`${number(start.x)} ${number(start.y)} Tm ${face.font.encodeText(run.text)} Tj ET\n`);
-      along += face.font.widthOfTextAtSize(run.text, mark.size);
+      out.push(`${number(start.x)} ${number(start.y)} Tm ${set.code} Tj ET\n`);
+      along += set.width * mark.size;
     }
   }
 
@@ -171,6 +175,15 @@ export class PdfWriter implements Lettering {
     }
     return runs as Run[];
   }
+}
+
+function setText(face: Face, text: string): { readonly code: string; readonly width: number } {
+  let set = face.set.get(text);
+  if (!set) {
+    set = { code: String(face.font.encodeText(text)), width: face.font.widthOfTextAtSize(text, 1) };
+    face.set.set(text, set);
+  }
+  return set;
 }
 
 function stroke(out: string[], { points, closed, pen }: Stroke): void {

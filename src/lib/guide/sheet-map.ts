@@ -1,4 +1,4 @@
-import { formatDecimal, formatLength } from '$lib/units/length';
+import { formatDecimal } from '$lib/units/length';
 import type { ClothFrame } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
 import {
@@ -15,6 +15,7 @@ import {
 } from './drawing';
 import type { GuideInput } from './guide-input';
 import type { LaidPiece, LonePanel } from './laid-piece';
+import { onPaper } from './measure-words';
 import { handWords } from './piece-drawing';
 import { identity, notice } from './ticket';
 import { groups, printed, TAPED_UP_LIMIT, type TapedUpChecks, type Tiling } from './tiling';
@@ -22,12 +23,6 @@ import { groups, printed, TAPED_UP_LIMIT, type TapedUpChecks, type Tiling } from
 /*
  * How the sheets go together: a map, and what a tape must read when they are taped up.
  */
-
-/** A measured length on paper: millimetres, and inches for a studio that reads them. */
-function measured(mm: number, input: GuideInput): string {
-  const shown = `${formatDecimal(mm, 1, true)} mm`;
-  return input.lengthUnit === 'in' ? `${shown} (${formatLength(mm, 'in')})` : shown;
-}
 
 /** The map of the sheets of the cloth. */
 export function drawMap(
@@ -161,12 +156,13 @@ function explain(
         `${formatDecimal(tiling.rules.overlap, 1)} mm, so that rings and crosses meet, and tape it.`,
       3.6
     );
+  put(
+    'A sheet’s left band says where the lower left corner of its window lies: along the warp from the zero line, and ' +
+      `across from the near ${frame.near}.`,
+    3.6
+  );
   if (islands > 1)
-    put(
-      `The sheets make ${islands} groups that don’t touch: place each by the distances printed at its left edge.`,
-      3.6,
-      'bold'
-    );
+    put(`The sheets make ${islands} groups that don’t touch: place each by its corners.`, 3.6, 'bold');
   return top;
 }
 
@@ -183,7 +179,7 @@ function tapedUp(
   for (const check of checks) {
     page.put(`${check.from} – ${check.to}`, x, y, 4.2, { weight: 'bold' });
     page.put(check.name, x + 16, y, 3.8);
-    page.put(measured(check.length, input), x + width, y, 4.6, { weight: 'bold', align: 'end' });
+    page.put(onPaper(check.length, input.lengthUnit), x + width, y, 4.6, { weight: 'bold', align: 'end' });
     y -= 6;
   }
   const limit = `More than ${TAPED_UP_LIMIT} mm off in any of them: do not cut. Take the joins apart, or print again at 100 %.`;

@@ -208,15 +208,15 @@ function sideBand(window: Box, margin: number, tile: Tile, say: SheetWords, lett
     );
   };
   put(say.identity, margin + 3, 'bold');
-  if (say.near)
-    put(`Window’s lower left corner: ${cornerWords(tile.window, say.near)}`, margin + 7.2, 'regular');
+  if (say.near) put(`Corner: ${cornerWords(tile.window, say.near)}`, margin + 7.2, 'regular');
   return marks;
 }
 
-/** Where the window's lower left corner lies on the cloth: 'zero line + 167 mm, near selvedge + 0 mm'. */
+/** Where the window's lower left corner lies on the cloth: 'zero + 167 mm, near selvedge − 10 mm'. */
 function cornerWords({ minX, minY }: Box, near: 'fold' | 'selvedge'): string {
-  const along = `${formatDecimal(Math.abs(minX), 1)} mm ${minX < 0 ? 'before' : 'from'} the zero line`;
-  return `${along}, ${formatDecimal(Math.abs(minY), 1)} mm ${minY < 0 ? 'outside' : 'from'} the near ${near}`;
+  const distance = (value: number): string =>
+    `${value < 0 ? '−' : '+'} ${formatDecimal(Math.abs(value), 1)} mm`;
+  return `zero ${distance(minX)}, near ${near} ${distance(minY)}`;
 }
 
 /** A join mark: a ring and a cross, and the names of the two sheets that meet there. */

@@ -1,7 +1,7 @@
 import { create } from 'qrcode';
 import type { Box } from '$lib/geometry/point';
 import { needHands } from '$lib/lay/document';
-import { formatDecimal, formatLength } from '$lib/units/length';
+import { formatDecimal } from '$lib/units/length';
 import { napWords, plies, sideUpWords, spreadWords, type ClothFrame } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
 import {
@@ -17,6 +17,7 @@ import {
 } from './drawing';
 import type { GuideInput } from './guide-input';
 import type { LaidPiece } from './laid-piece';
+import { onTape } from './measure-words';
 import { handWords } from './piece-drawing';
 
 /*
@@ -185,7 +186,7 @@ function facts(
 ): void {
   const { strip } = input.document;
   const { readings } = input;
-  const length = (mm: number): string => formatLength(mm, input.lengthUnit, { decimals: 1 });
+  const length = (mm: number): string => onTape(mm, input.lengthUnit);
   const percent = (share: number | null): string =>
     share === null ? 'nothing placed' : `${formatDecimal(share * 100, 1, true)} %`;
   const { start, end } = strip.endAllowance;

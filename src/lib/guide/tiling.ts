@@ -179,13 +179,15 @@ export function tileOnPaper(
   );
 }
 
+const LEAST_WINDOW: Millimetres = 156;
+
 /** `extent` on one page of its own size, or on equal pages where it is longer or wider than a page may be. */
 export function tileWhole(extent: Box, outlines: readonly Outline[], rules: SheetRules): Tiling {
   const longest = windowOf(LONGEST_SIDE, LONGEST_SIDE, rules);
   return grid(extent, outlines, rules, {
-    // The checks of 100 mm need room beside a very small piece.
-    width: Math.max(130, equalShare(extent.maxX - extent.minX, longest.width, rules.overlap)),
-    height: Math.max(130, equalShare(extent.maxY - extent.minY, longest.height, rules.overlap))
+    // The checks and the words need room beside a very small piece.
+    width: Math.max(LEAST_WINDOW, equalShare(extent.maxX - extent.minX, longest.width, rules.overlap)),
+    height: Math.max(LEAST_WINDOW, equalShare(extent.maxY - extent.minY, longest.height, rules.overlap))
   });
 }
 
