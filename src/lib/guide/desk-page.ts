@@ -18,6 +18,7 @@ import {
 export const DESK_MARGIN: Millimetres = 12;
 
 export interface Desk {
+  readonly name: string;
   readonly width: Millimetres;
   readonly height: Millimetres;
 }
@@ -59,6 +60,12 @@ export class DeskPage {
     this.marks.push(words({ x, y }, shown, size, { weight, align, shade }));
   }
 
+  /** Puts bold words, smaller where `room` is short, down to 3 mm; only then cut off. */
+  putSmaller(text: string, x: Millimetres, y: Millimetres, size: Millimetres, room: Millimetres): void {
+    const fits = Math.max(3, Math.min(size, room / this.lettering.width(text, 1, 'bold')));
+    this.put(text, x, y, fits, { weight: 'bold', room: room + 0.01 });
+  }
+
   /** A line over the page at the next free height. */
   rule(width: Millimetres = 0.25, shade = 0): void {
     this.marks.push(
@@ -87,7 +94,8 @@ export class DeskPage {
   done(notice: string): Page {
     this.put(notice, this.left, DESK_MARGIN, 3.2, { room: this.width });
     return {
-      ...this.desk,
+      width: this.desk.width,
+      height: this.desk.height,
       name: this.name,
       layers: [...this.drawings, { origin: { x: 0, y: 0 }, scale: 1, window: null, marks: this.marks }]
     };

@@ -126,13 +126,13 @@ interface Context {
 /** What the pages before the sheets are printed on: A4, or Letter where the studio or the sheets are in inches. */
 function deskOf(input: GuideInput, choice: GuideChoice): Desk {
   const inches = choice.paper === 'Letter' || choice.paper === 'Tabloid' || choice.paper?.startsWith('ASME');
-  const { width, height } =
+  const { name, width, height } =
     inches || (choice.paper === undefined && input.lengthUnit === 'in') ? papers.Letter : papers.A4;
-  return { width, height: height! };
+  return { name, width, height: height! };
 }
 
-function sideways(desk: Desk): Desk {
-  return { width: desk.height, height: desk.width };
+function sideways({ name, width, height }: Desk): Desk {
+  return { name, width: height, height: width };
 }
 
 function labelWords(input: GuideInput): LabelWords {
@@ -178,11 +178,18 @@ function planCloth({ input, choice, pieces, frame, desk, missing, lettering }: C
   const paper =
     choice.kind === 'whole'
       ? 'the cloth’s own size'
-      : `${paperOf(choice)!.name}, ${tiling.page.width > tiling.page.height ? 'landscape' : 'portrait'}`;
+      : `${paperOf(choice)!.name} ${tiling.page.width > tiling.page.height ? 'landscape' : 'portrait'}`;
   const wide = sideways(desk);
   return {
     front: [
-      ...drawTicket(input, frame, pieces, { paper, sheets: shown.length, missing }, desk, lettering),
+      ...drawTicket(
+        input,
+        frame,
+        pieces,
+        { deskPaper: desk.name, paper, sheets: shown.length, missing },
+        desk,
+        lettering
+      ),
       ...drawOverview(input, frame, pieces, wide, lettering),
       drawMap(input, frame, pieces, tiling, checks, wide, lettering)
     ],
@@ -232,7 +239,7 @@ function planPanels({ input, choice, pieces, frame, desk, missing, lettering }: 
   const paper = paperOf(choice)?.name ?? 'each panel’s own size';
   return {
     front: [
-      ...drawTicket(input, frame, pieces, { paper, sheets, missing }, desk, lettering),
+      ...drawTicket(input, frame, pieces, { deskPaper: desk.name, paper, sheets, missing }, desk, lettering),
       ...drawOverview(input, frame, pieces, wide, lettering),
       ...drawPanelList(input, panels, wide, lettering)
     ],

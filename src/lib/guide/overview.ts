@@ -184,14 +184,21 @@ function drawSmall(
   const cut = piece.cut.map(at);
   // What of it is seen here; the whole of it but where it runs on into the next stretch.
   const seen = clipped(piece.cut, from, to).map(at);
+  const small = seen.length < 3 || smallest(seen) < 7;
   return [
     surface([cut, ...holes], 0.93),
     line(cut, pen(0.3), true),
     ...holes.map((hole) => line(hole, THIN, true)),
-    line([tail, head], THIN),
-    arrowHead(tail, head, 1.8),
-    ...label(piece, seen, [[tail, head], ...holes], lettering)
+    // On a piece this small the number is worth more than the arrow; its distances are in the table.
+    ...(small ? [] : [line([tail, head], THIN), arrowHead(tail, head, 1.8)]),
+    ...label(piece, seen, small ? holes : [[tail, head], ...holes], lettering)
   ];
+}
+
+/** The shorter side of the box around `points`. */
+function smallest(points: readonly Point[]): number {
+  const { minX, minY, maxX, maxY } = boundingBox(points);
+  return Math.min(maxX - minX, maxY - minY);
 }
 
 /** The number, with the name where it fits. */

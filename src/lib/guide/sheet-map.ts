@@ -24,6 +24,9 @@ import { groups, printed, TAPED_UP_LIMIT, type TapedUpChecks, type Tiling } from
  * How the sheets go together: a map, and what a tape must read when they are taped up.
  */
 
+/** Room for the targets' letters above and below the map. */
+const LETTERS = 5;
+
 /** The map of the sheets of the cloth. */
 export function drawMap(
   input: GuideInput,
@@ -46,8 +49,9 @@ export function drawMap(
   const long = box.maxX - box.minX;
   const high = box.maxY - box.minY;
   // The words stand below a long cloth, beside a short one: whichever leaves the map larger.
-  const below = Math.min(page.width / long, (page.top - page.foot - 46) / high);
-  const beside = Math.min((page.width - 96) / long, (page.top - page.foot) / high);
+  page.top -= LETTERS;
+  const below = Math.min(page.width / long, (page.top - page.foot - 50) / high);
+  const beside = Math.min((page.width - 96) / long, (page.top - page.foot - LETTERS) / high);
   const scale = Math.max(below, beside);
   const bottom = page.top - high * scale;
   const at = (x: number, y: number) => ({
@@ -61,7 +65,7 @@ export function drawMap(
     const end = explain(page, { x, y: page.top, width }, input, frame, tiling);
     tapedUp(page, { x, y: end - 4, width }, input, checks);
   } else {
-    const y = bottom - 5;
+    const y = bottom - LETTERS - 3;
     explain(page, { x: page.left, y, width: page.width * 0.46 }, input, frame, tiling);
     tapedUp(page, { x: page.left + page.width * 0.52, y, width: page.width * 0.48 }, input, checks);
   }
@@ -114,9 +118,10 @@ function mapMarks(
   for (const { name, at: target } of checks.targets) {
     const place = at(target.x, target.y);
     const left = name === 'A' || name === 'D';
+    const low = name === 'A' || name === 'B';
     marks.push(ring(place, Math.min(1.4, 8 * scale), pen(0.35)));
     marks.push(
-      words({ x: place.x + (left ? 2.2 : -2.2), y: place.y - 1.4 }, name, 4, {
+      words({ x: place.x, y: low ? place.y - 5.4 : place.y + 2.6 }, name, 4, {
         weight: 'bold',
         align: left ? 'start' : 'end'
       })
@@ -231,7 +236,7 @@ export function drawPanelList(
         [panel.piece.panel, handWords(panel.piece.hand)].filter(Boolean).join(', '),
         panel.cuts.map(({ garment, copies }) => (copies > 1 ? `${garment} × ${copies}` : garment)).join(', '),
         String(panel.piece.copies),
-        shown === 1 ? '1' : `${shown}, ${tiling.rows} × ${tiling.columns}`,
+        shown === 1 ? '1' : `${shown} in ${tiling.rows} × ${tiling.columns}`,
         ...checks.checks.map((check) => formatDecimal(check.length, 1, true))
       ];
     }),

@@ -28,7 +28,9 @@ import { handWords } from './piece-drawing';
 export const CHECK_SQUARES = [100, 101.6] as const;
 
 export interface TicketWords {
-  /** The paper of the sheets: 'A4', 'a page of the cloth's size'. */
+  /** The paper of the pages before the sheets: 'A4'. */
+  readonly deskPaper: string;
+  /** The paper of the sheets: 'A4 portrait', 'the cloth's own size'. */
   readonly paper: string;
   readonly sheets: number;
   /** Code points of letters that the fonts lack. */
@@ -66,13 +68,13 @@ export function shortHash(hash: string): string {
   return (hash.slice(0, 12).match(/.{4}/g) ?? [hash]).join(' ');
 }
 
-/** Which lay this is, on every page. */
+/** Which lay this is, on every page: the name last, for it may be cut off, and the hash must not. */
 export function identity(input: GuideInput): string {
   return [
     `Order ${input.orderNumber}`,
-    input.lay,
     `revision ${input.revision.number}`,
-    shortHash(input.revision.hash)
+    shortHash(input.revision.hash),
+    input.lay
   ].join(' · ');
 }
 
@@ -202,12 +204,12 @@ function facts(
     ['Length of the lay', length(frame.lengthUsed)],
     [
       'Cloth it takes',
-      `${length(frame.lengthUsed + start + end)}, with ${length(start)} at the start and ${length(end)} at the end`
+      `${length(frame.lengthUsed + start + end)}, ends of ${length(start)} and ${length(end)} included`
     ],
     ['Efficiency', `${percent(readings.efficiency)}${loose > 0 ? ' so far' : ''}`],
     ['Pieces', `${count}${loose > 0 ? `, and ${loose} not on the cloth yet` : ''}`],
     ['Revision', [String(input.revision.number), input.revision.name].filter(Boolean).join(' · ')],
-    ['Sheets', `${say.sheets} of ${say.paper}`]
+    ['Sheets', `${say.sheets}, ${say.paper}`]
   ];
   const row = 5.7;
   const code = 39;
@@ -215,7 +217,7 @@ function facts(
   rows.forEach(([word, value], i) => {
     const y = top - 4.2 - i * row;
     page.put(word, page.left, y, 3.4);
-    page.put(value, page.left + 31, y, 4.2, { weight: 'bold', room: page.width - 31 - code - 8 });
+    page.putSmaller(value, page.left + 31, y, 4.2, page.width - 31 - code - 8);
   });
   page.marks.push(...qr(input.scanAddress, page.right - code, top - 2 - code, code));
   const middle = page.right - code / 2;
@@ -308,7 +310,7 @@ function checkSquares(page: DeskPage, say: TicketWords): void {
   put('In the print dialogue', 5, 'bold');
   put('Scale 100 %, also called “actual size”.', 4.2, 'regular');
   put('No “fit to page”, no shrinking, no borderless enlargement.', 4.2, 'regular');
-  put(`Sheets: ${say.paper}, one side only.`, 4.2, 'regular');
+  put(`First pages: ${say.deskPaper}. Sheets: ${say.paper}. One side only.`, 4.2, 'regular');
   top -= 2;
   put('Then measure both squares, both ways', 5, 'bold');
   put(

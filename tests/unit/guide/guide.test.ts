@@ -106,7 +106,7 @@ describe('every sheet', () => {
     expect(sheetPages.length).toBeGreaterThan(4);
     for (const page of sheetPages) {
       const text = textOf(page);
-      expect(text).toMatch(/Order 27 · Day dress, main cloth · revision 3 · 1a2b 3c4d 5e6f/);
+      expect(text).toMatch(/Order 27 · revision 3 · 1a2b 3c4d 5e6f · Day dress, main cloth/);
       expect(text).toMatch(/\bwarp\b/);
       expect(text).toMatch(/\bnap\b/);
       expect(text).toContain('right side up');
