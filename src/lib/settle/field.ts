@@ -174,6 +174,10 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     region[1] = py - reachY;
     region[2] = px + reachX;
     region[3] = py + reachY;
+    if (stamped === 0x7fffffff) {
+      stamp.fill(0);
+      stamped = 0;
+    }
     const mark = ++stamped;
     stamp[i] = mark;
     nearCount = 0;
@@ -661,9 +665,22 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     }
   }
 
-  /** Lays everything as in `lay` and works out all overlaps. */
-  function load(lay: Lay): void {
+  /**
+   * Lays everything as in `lay`, each piece moved into the strip and onto its lattice, and works out all overlaps.
+   * False, with nothing changed, if the length leaves some piece no place.
+   */
+  function load(lay: Lay): boolean {
+    const former = state[LENGTH]!;
     state[LENGTH] = lay.length;
+    for (let i = 0; i < n; i++) {
+      const c = lay.choice[i]!;
+      const fits = boxOf(c);
+      placedX[i] = onLattice(lay.x[i]!, phaseX[c]!, sizeX[c]!, box[0]!, box[2]!);
+      placedY[i] = onLattice(lay.y[i]!, phaseY[c]!, sizeY[c]!, box[1]!, box[3]!);
+      if (fits && placedX[i] === placedX[i] && placedY[i] === placedY[i]) continue;
+      state[LENGTH] = former;
+      return false;
+    }
     const needed = Math.max(1, Math.ceil(lay.length / columnWidth));
     if (needed > columns) {
       columns = needed + 4;
@@ -671,8 +688,8 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
       cellCount = new Int32Array(columns * rows);
     } else cellCount.fill(0);
     for (let i = 0; i < n; i++) {
-      x[i] = lay.x[i]!;
-      y[i] = lay.y[i]!;
+      x[i] = placedX[i]!;
+      y[i] = placedY[i]!;
       choice[i] = lay.choice[i]!;
       form[i] = choiceForm[choice[i]!]!;
     }
@@ -681,7 +698,10 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     overlaps.fill(0);
     state[PAIRS] = 0;
     for (let i = 0; i < n; i++) judge(i, true);
+    return true;
   }
+  const placedX = new Float64Array(n);
+  const placedY = new Float64Array(n);
 
   function save(lay: Lay): void {
     for (let i = 0; i < n; i++) {

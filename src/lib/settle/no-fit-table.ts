@@ -106,8 +106,9 @@ export function createTables(): NoFitTables {
     tables.head[h + 1] = y0;
     tables.head[h + 2] = x1;
     tables.head[h + 3] = y1;
-    tables.head[h + 4] = side / (x1 - x0);
-    tables.head[h + 5] = side / (y1 - y0);
+    // A hair less than the side, so that rounding never counts one cell too far.
+    tables.head[h + 4] = (side / (x1 - x0)) * (1 - 1e-12);
+    tables.head[h + 5] = (side / (y1 - y0)) * (1 - 1e-12);
     const s = id * SIZES;
     tables.sizes[s] = edgeCount;
     tables.sizes[s + 1] = total;

@@ -10,6 +10,8 @@ import type { Degrees, Millimetres, Share } from '$lib/units/measure';
 export interface Way {
   readonly turn: Degrees;
   readonly flip: boolean;
+  /** 1 with the nap, −1 against it, 0 neither. Only pieces of a nap group ask. */
+  readonly nap: 1 | -1 | 0;
 }
 
 /** Where a line of the cloth's repeat may take a piece: its anchor falls on `at` + a whole number of `size`. */
@@ -31,7 +33,7 @@ export interface SettlePiece {
   readonly ways: readonly Way[];
   /** How far off each of its ways it may be turned, degrees either way. */
   readonly tilt: Degrees;
-  /** Pieces of one nap group all lie with the same turn of their ways list: all along, or all against. */
+  /** Pieces of one nap group all lie with the nap, or all against it. */
   readonly napGroup: string | null;
   /** Whether its lowest edge lies on y = 0, the fold. */
   readonly onFold: boolean;
@@ -58,6 +60,8 @@ export interface SettleProblem {
   readonly keepOuts: readonly Outline[];
   /** The least distance between two cut lines. */
   readonly clearance: Millimetres;
+  /** Overlaps up to here count as touching: 0.01 mm in the product. */
+  readonly touching: Millimetres;
   readonly pieces: readonly SettlePiece[];
   /** Outlines, as they lie, of the pieces that stay where they are. */
   readonly locked: readonly { readonly id: string; readonly name: string; readonly outline: Outline }[];

@@ -36,7 +36,6 @@ export function* search(
   const trial = emptyLay(n);
   const nearest = emptyLay(n);
   let nearestLoss = Infinity;
-  let attempt = 0;
 
   function accept(): void {
     field.save(course.best);
@@ -101,16 +100,10 @@ export function* search(
     copyLay(from, trial);
     const by = trial.length - length;
     const cut = random() * trial.length;
-    for (let i = 0; i < n; i++) {
-      const half = halfWidth(trial, i);
-      if (trial.x[i]! > cut) trial.x[i]! -= by;
-      trial.x[i] = Math.max(half, Math.min(length - half, trial.x[i]!));
-    }
+    for (let i = 0; i < n; i++) if (trial.x[i]! > cut) trial.x[i]! -= by;
     trial.length = length;
     return trial;
   }
-
-  const halfWidth = (lay: Lay, i: number) => task.forms[task.choiceForm[lay.choice[i]!]!]!.hx;
 
   /** Opens a near miss where it presses most, by a little more than that, as long as it stays a gain. */
   function* repair(): Generator<void, boolean, void> {
@@ -125,7 +118,7 @@ export function* search(
       const cut = j < n ? (nearest.x[i]! + nearest.x[j]!) / 2 : nearest.x[i]!;
       for (let k = 0; k < n; k++) if (trial.x[k]! >= cut) trial.x[k]! += factor * depth;
       trial.length = length;
-      field.load(trial);
+      if (!field.load(trial)) return false;
       if (yield* separate(1, 40)) {
         accept();
         return true;
@@ -149,10 +142,8 @@ export function* search(
         [a, b],
         [b, a]
       ] as const) {
-        const form = task.forms[task.choiceForm[lay.choice[i]!]!]!;
-        const half = form.hx;
-        swapX[i] = Math.max(half, Math.min(lay.length - half, lay.x[j]!));
-        swapY[i] = Math.max(form.hy, Math.min(task.width - form.hy, lay.y[j]!));
+        swapX[i] = lay.x[j]!;
+        swapY[i] = lay.y[j]!;
       }
       for (const i of [a, b]) {
         lay.x[i] = swapX[i]!;
@@ -168,7 +159,10 @@ export function* search(
   /** One attempt at a lay shorter by `step`; true if the best got better. */
   function* shorten(step: number, strikes: number, patience: number): Generator<void, boolean, void> {
     const length = Math.max(task.least, course.best.length * (1 - step));
-    field.load(shrink(course.best, length));
+    if (!field.load(shrink(course.best, length))) {
+      yield;
+      return false;
+    }
     if (yield* separate(strikes, patience)) {
       accept();
       return true;
@@ -180,7 +174,6 @@ export function* search(
   let squeeze = 0.003;
   if (n === 0) return;
   for (;;) {
-    attempt++;
     if (adopt()) continue;
     if (course.best.length <= task.least * (1 + 1e-9)) {
       yield;
@@ -210,7 +203,7 @@ export function* search(
     for (let tries = 0; tries < 3 && !course.offered && course.share < 0.75; tries++) {
       copyLay(nearest, trial);
       swapLarge(trial);
-      field.load(trial);
+      if (!field.load(trial)) break;
       if (yield* separate(2, 60)) {
         accept();
         break;

@@ -5,12 +5,21 @@ import { centredRing, cleaned, formOf, ringArea, ringKey, type Form } from './fo
 import type { SettlePiece, SettlePlacement, SettleProblem, Way } from './problem';
 import { outerSimplified } from './simplify';
 
+/** A way of a piece and the choice that it is, of several ways that look alike. */
+export interface Look {
+  readonly way: Way;
+  readonly choice: number;
+  readonly x: number;
+  readonly y: number;
+}
+
 /** One copy of a piece that the search moves. Its choices are numbers first … last − 1 of the task's choice arrays. */
 export interface Item {
   readonly piece: string;
   readonly copy: number;
   readonly first: number;
   readonly last: number;
+  readonly looks: readonly Look[];
 }
 
 /** Something that stays where it is: a locked piece, a flaw, the surroundings of a remnant. */
@@ -38,6 +47,8 @@ export interface Task {
   readonly clear: readonly boolean[];
   readonly clearance: number;
   readonly items: readonly Item[];
+  /** Copies of pieces that have no way to lie on this cloth. */
+  readonly unplaceable: readonly { readonly piece: string; readonly copy: number }[];
   readonly fixed: readonly Fixed[];
   readonly choiceForm: Int32Array;
   readonly choiceWay: readonly Way[];
@@ -79,6 +90,7 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
   const width = Math.round(problem.width * scale);
   const limit = problem.length === null ? null : Math.round(problem.length * scale);
   const items: Item[] = [];
+  const unplaceable: { piece: string; copy: number }[] = [];
   const choice = {
     form: [] as number[],
     way: [] as Way[],
@@ -102,16 +114,22 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
         ? outerSimplified(piece.outline, coarse * rooted)
         : piece.outline;
     const first = choice.form.length;
-    const seen = new Set<number>();
+    const seen = new Map<number, number>();
+    const looks: Look[] = [];
     let shortest = Infinity;
     for (const way of waysOf(piece, problem, grouped, random)) {
       const centred = centredRing(outline, way, scale);
       if (!centred) continue;
       const form = formNumber(centred.ring, true);
       const { hx, hy } = forms[form]!;
-      if (2 * hy > width || (seen.has(form) && !piece.lattice)) continue;
-      if (limit !== null && 2 * hx > limit) continue;
-      seen.add(form);
+      if (2 * hy > width || (limit !== null && 2 * hx > limit)) continue;
+      const alike = seen.get(form);
+      if (alike !== undefined && !piece.lattice) {
+        looks.push({ way, choice: alike, x: centred.cx, y: centred.cy });
+        continue;
+      }
+      seen.set(form, choice.form.length);
+      looks.push({ way, choice: choice.form.length, x: centred.cx, y: centred.cy });
       shortest = Math.min(shortest, 2 * hx);
       choice.form.push(form);
       choice.way.push(way);
@@ -128,10 +146,12 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
       choice.phaseY.push(lattice?.y ? (lattice.y.at - (ax * sin + ay * cos)) * scale + centred.cy : 0);
     }
     const last = choice.form.length;
-    if (last === first)
-      throw new RangeError(`${piece.name} has no way to lie on a width of ${problem.width}`);
+    if (last === first) {
+      for (let copy = 0; copy < piece.copies; copy++) unplaceable.push({ piece: piece.id, copy });
+      continue;
+    }
     longest = Math.max(longest, shortest);
-    for (let copy = 0; copy < piece.copies; copy++) items.push({ piece: piece.id, copy, first, last });
+    for (let copy = 0; copy < piece.copies; copy++) items.push({ piece: piece.id, copy, first, last, looks });
     const own = outlineArea(piece.outline) * scale * scale;
     area += own * piece.copies;
     roots += Math.sqrt(own) * piece.copies;
@@ -139,7 +159,7 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
 
   const fixed: Fixed[] = [];
   const fix = (outline: Outline, kept: boolean) => {
-    const centred = centredRing(outline, { turn: 0, flip: false }, scale);
+    const centred = centredRing(outline, { turn: 0, flip: false, nap: 0 }, scale);
     if (!centred) return;
     fixed.push({ form: formNumber(centred.ring, kept), x: centred.cx, y: centred.cy });
   };
@@ -163,6 +183,7 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
     clear,
     clearance: problem.clearance * scale,
     items,
+    unplaceable,
     fixed,
     choiceForm: Int32Array.from(choice.form),
     choiceWay: choice.way,
@@ -221,13 +242,25 @@ function waysOf(
   if (piece.napGroup !== null) {
     let along = grouped.get(piece.napGroup);
     if (along === undefined) grouped.set(piece.napGroup, (along = random() < 0.5));
-    const kept = ways.filter((way) => cosSin(way.turn)[0] > 0 === along);
+    const kept = ways.filter((way) => way.nap === 0 || way.nap > 0 === along);
     if (kept.length > 0) ways = kept;
   }
   if (piece.tilt <= 0) return ways;
-  return TILTS.flatMap((share) =>
-    ways.map((way) => ({ turn: snapTurn(way.turn + share * piece.tilt), flip: way.flip }))
+  const tilted = TILTS.flatMap((share) =>
+    ways.map((way) => ({ ...way, turn: snapTurn(way.turn + share * piece.tilt) }))
   );
+  // A person's own tilt is kept as it is.
+  for (const { piece: id, turn, flip } of problem.start) {
+    if (id !== piece.id) continue;
+    const near = ways.find((way) => way.flip === flip && turnBetween(way.turn, turn) <= piece.tilt);
+    if (near) tilted.push({ ...near, turn });
+  }
+  return tilted;
+}
+
+/** The least turn from one angle to the other, 0 … 180. */
+export function turnBetween(a: number, b: number): number {
+  return Math.abs(((((a - b) % 360) + 540) % 360) - 180);
 }
 
 export function outlineArea(outline: Outline): number {
@@ -277,18 +310,20 @@ function surroundings(problem: SettleProblem, scale: number): Outline[] {
   return found;
 }
 
-/** Which choice of `item` a placement is, and where its centre lies; null if it is none of them. */
-export function choiceOf(task: Task, item: Item, placement: SettlePlacement): number | null {
-  let best: number | null = null;
-  let nearest = 180;
-  for (let c = item.first; c < item.last; c++) {
-    const way = task.choiceWay[c]!;
-    if (way.flip !== placement.flip) continue;
-    const apart = Math.abs(((way.turn - placement.turn + 540) % 360) - 180);
-    if (apart < nearest) {
-      nearest = apart;
-      best = c;
-    }
-  }
-  return best;
+/** `placement` as a choice of `item` and the centre of its box; null if that is no way of the piece. */
+export function placeOf(
+  task: Task,
+  item: Item,
+  placement: SettlePlacement
+): { choice: number; x: number; y: number } | null {
+  const look = item.looks.find(
+    ({ way }) => way.flip === placement.flip && turnBetween(way.turn, placement.turn) < 1e-3
+  );
+  return look
+    ? {
+        choice: look.choice,
+        x: placement.x * task.scale + look.x,
+        y: placement.y * task.scale + look.y
+      }
+    : null;
 }

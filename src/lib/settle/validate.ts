@@ -22,15 +22,15 @@ export interface Breach {
 
 /**
  * Every rule that `result` breaks, found with other code than the search's: on the original outlines as the product
- * places them, overlaps by a general polygon library, distances between their edges. What is less than
- * `tolerance` (0.01 mm in the product) counts as touching.
+ * places them, edge against edge. What is less than the problem's `touching` counts as none.
  */
-export function validate(problem: SettleProblem, result: SettleResult, tolerance: Millimetres): Breach[] {
+export function validate(problem: SettleProblem, result: SettleResult): Breach[] {
+  const tolerance = problem.touching;
   const breaches: Breach[] = [];
   const pieces = new Map(problem.pieces.map((piece) => [piece.id, piece]));
   const seen = new Set<string>();
   const placed: Placed[] = [];
-  const naps = new Map<string, boolean>();
+  const naps = new Map<string, number>();
   let furthest = 0;
   for (const placement of result.placements) {
     const piece = pieces.get(placement.piece);
@@ -40,17 +40,19 @@ export function validate(problem: SettleProblem, result: SettleResult, tolerance
       continue;
     }
     seen.add(name);
-    const off = Math.min(
-      ...piece.ways
-        .filter((way) => way.flip === placement.flip)
-        .map((way) => Math.abs(((way.turn - placement.turn + 540) % 360) - 180))
-    );
+    let off = Infinity;
+    let nap = 0;
+    for (const way of piece.ways) {
+      const apart = Math.abs(((((way.turn - placement.turn) % 360) + 540) % 360) - 180);
+      if (way.flip !== placement.flip || apart >= off) continue;
+      off = apart;
+      nap = way.nap;
+    }
     if (!(off <= piece.tilt + 1e-4)) breaches.push({ rule: 'way', pieces: [name], measure: off });
-    if (piece.napGroup !== null) {
-      const along = Math.cos((placement.turn * Math.PI) / 180) > 0;
-      if ((naps.get(piece.napGroup) ?? along) !== along)
+    if (piece.napGroup !== null && nap !== 0) {
+      if ((naps.get(piece.napGroup) ?? nap) !== nap)
         breaches.push({ rule: 'nap', pieces: [name], measure: 180 });
-      naps.set(piece.napGroup, along);
+      naps.set(piece.napGroup, nap);
     }
     const outline = placeOutline(piece.outline, placement);
     const low = Math.min(...outline.map((p) => p.y));
