@@ -1,7 +1,6 @@
 import type { Millimetres } from '$lib/units/measure';
 import { joinCorner, type Chain, type CornerJoin } from './offset-corner';
 import { outerRing } from './outer-ring';
-import { withoutRepeats } from './polygon';
 import type { Point } from './point';
 
 /*
@@ -37,17 +36,16 @@ export function offsetOutline(edges: readonly OffsetEdge[]): Point[] | null {
 
 /** The line beside one edge, not yet joined to its neighbours. */
 function chainOf({ points: given, distance }: OffsetEdge): Chain {
-  const points = given.length > 2 ? withoutRepeats([...given]) : [...given];
-  // A closed edge (a circle drawn in one) has lost its repeated end, which the chain needs.
-  const [first, last] = [given[0]!, given[given.length - 1]!];
-  if (given.length > 2 && first.x === last.x && first.y === last.y) points.push(last);
+  const points = given.filter((p, i) => i === 0 || p.x !== given[i - 1]!.x || p.y !== given[i - 1]!.y);
   const directions = points.slice(1).map((b, i) => {
     const a = points[i]!;
     const length = Math.hypot(b.x - a.x, b.y - a.y);
-    if (length === 0) throw new RangeError(`An edge at (${a.x}, ${a.y}) has no length`);
     return { x: (b.x - a.x) / length, y: (b.y - a.y) / length, length };
   });
-  if (directions.length === 0) throw new RangeError('An edge needs two points');
+  if (directions.length === 0) {
+    const at = given[0];
+    throw new RangeError(at ? `An edge at (${at.x}, ${at.y}) has no length` : 'An edge has no points');
+  }
   const beside = (p: Point, d: Point): Point => ({ x: p.x + d.y * distance, y: p.y - d.x * distance });
   const start = directions[0]!;
   const end = directions[directions.length - 1]!;
