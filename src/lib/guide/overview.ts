@@ -86,11 +86,12 @@ function columns(width: number, unit: LengthUnit) {
     align: 'end' as const,
     ...(group && { group })
   });
-  const rest = width - 9 - 8 * 20;
+  const rest = width - 9 - 13 - 8 * 20;
   return [
     { word: 'no.', width: 9, align: 'end' as const, weight: 'bold' as const },
-    { word: 'piece', width: rest * 0.56, align: 'start' as const, weight: 'bold' as const },
-    { word: `garment (lengths in ${unit})`, width: rest * 0.44, align: 'start' as const },
+    { word: 'piece', width: rest * 0.54, align: 'start' as const, weight: 'bold' as const },
+    { word: 'hand', width: 13, align: 'start' as const, weight: 'bold' as const },
+    { word: `garment (lengths in ${unit})`, width: rest * 0.46, align: 'start' as const },
     figure('from zero', 'grain line, tail'),
     figure('from near'),
     figure('from zero', 'grain line, head'),
@@ -107,7 +108,8 @@ function rowOf(unit: LengthUnit): (piece: LaidPiece) => string[] {
   const length = (mm: number): string => onTape(mm, unit, { bare: true, fixed: true });
   return (piece) => [
     String(piece.number),
-    [piece.panel, handWords(piece.hand)].filter(Boolean).join(', '),
+    piece.panel,
+    piece.hand === 'either' ? '' : piece.hand,
     piece.garment,
     length(piece.grain.from.x),
     length(piece.grain.from.y),

@@ -166,7 +166,7 @@ describe('the overview', () => {
     const tail = ((skirt.grain.from.x + 15) / 10).toFixed(1);
     const head = ((skirt.grain.to.x + 15) / 10).toFixed(1);
     const across = ((skirt.grain.to.y + 75) / 10).toFixed(1);
-    expect(text).toContain(`Skirt panel, left hand Ada dress 38 · 1 ${tail} ${across} ${head} ${across}`);
+    expect(text).toContain(`Skirt panel left Ada dress 38 · 1 ${tail} ${across} ${head} ${across}`);
   });
 
   it('in inches for a studio that reads them, on Letter', async () => {
