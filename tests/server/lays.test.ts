@@ -239,7 +239,13 @@ describe('when the order changes under a lay', () => {
   });
 
   test('pieces of a garment that is gone may stay until they are taken off, and stop the release', async () => {
-    const document = await saveGood();
+    const laid = good((await lays.read(scope, id)).document);
+    const point = { garment: laid.garments[0]!.id, panel: 'front', point: 'waist' };
+    const document: LayDocument = {
+      ...laid,
+      rules: { matchTolerance: 1, matchGroups: [{ id: 'm', points: [point] }] }
+    };
+    await lays.save(scope, id, { version: 1, saveId: newId(), document });
     await cast.db('order_items').where({ id: rows.item }).delete();
     const now = await lays.read(scope, id);
     expect(now.document).toMatchObject({ garments: [], needs: [] });

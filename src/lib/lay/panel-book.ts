@@ -1,5 +1,6 @@
-import type { ClothRole, TurnSet } from '$lib/pattern/panel';
+import type { ClothRole, Panel, TurnSet } from '$lib/pattern/panel';
 import type { PieceShape } from '$lib/pattern/piece-shape';
+import { resolvePanel } from '$lib/pattern/resolve';
 import type { Degrees } from '$lib/units/measure';
 import type { Garment } from './document';
 
@@ -13,6 +14,19 @@ export interface LayPanel {
   readonly grainTolerance: Degrees;
   /** False while the grain line is a guess: such a panel can't be released. */
   readonly grainConfirmed: boolean;
+}
+
+/** What a lay has to know of `panel`. Throws PanelFault for a panel that gives no piece. */
+export function layPanelOf(panel: Panel): LayPanel {
+  return {
+    shape: resolvePanel(panel),
+    role: panel.role,
+    howMany: panel.howMany,
+    paired: panel.paired,
+    turns: panel.turns,
+    grainTolerance: panel.grainTolerance,
+    grainConfirmed: panel.grain.confirmed
+  };
 }
 
 /** Every panel of a lay by `panelKey`. As JSON (API, revisions) it is a plain record. */

@@ -10,7 +10,7 @@ import { database } from './database';
 import * as content from './demo/content';
 import { placeAll } from './demo/first-fit';
 import { spoil } from './demo/spoil';
-import * as layRevisions from './lay-revisions';
+import * as layRelease from './lay-release';
 import * as lays from './lays';
 import * as orders from './orders';
 import { hashPassword } from './passwords';
@@ -131,12 +131,12 @@ async function addLay(
   const { id } = await lays.create(scope, { orderId, clothId, name: lay.name }, now);
   const made = await lays.read(scope, id);
   const placed = placeAll(made.document, made.panels);
-  const document: LayDocument = lay.as === 'faulty' ? spoil(placed) : placed;
+  const document: LayDocument = lay.as === 'faulty' ? spoil(placed, made.panels) : placed;
   const saveId = demoId(scope.studio, `save ${orderId} ${lay.cloth}`);
   const { version } = await lays.save(scope, id, { version: made.version, saveId, document }, now);
   await lays.check(scope, id, version);
   await lays.choose(scope, id);
-  if (lay.as === 'released') await layRevisions.release(scope, id, { version, name: 'For cutting' }, now);
+  if (lay.as === 'released') await layRelease.release(scope, id, { version, name: 'For cutting' }, now);
 }
 
 /**

@@ -54,8 +54,8 @@ export function refuseWhatIsNotTheirs(
 }
 
 /**
- * Refuses placements and match points of a garment or panel that is not of this lay. A placement that was stored while the
- * order still asked for its garment may stay until the person takes it off the cloth.
+ * Refuses placements and match points of a garment or panel that is not of this lay. What was stored while the order still
+ * asked for its garment may stay until the person takes it off the cloth.
  */
 function refuseStrangers(posted: LayDocument, stored: LayDocument, facts: LayFacts): void {
   const garments = new Map(facts.garments.map((garment) => [garment.id, garment]));
@@ -64,14 +64,19 @@ function refuseStrangers(posted: LayDocument, stored: LayDocument, facts: LayFac
     const known = garment && facts.book[panelKey(garment.styleVersion, panel)];
     return known !== undefined && facts.takes(garment!, known);
   };
-  const before = new Set(stored.placements.map(({ id, garment, panel }) => `${id}/${garment}/${panel}`));
+  const pointsOf = ({ rules }: LayDocument) => rules.matchGroups.flatMap(({ points }) => points);
+  const before = new Set([
+    ...stored.placements.map(({ id, garment, panel }) => `${id}/${garment}/${panel}`),
+    ...pointsOf(stored).map(({ point, garment, panel }) => `point ${point}/${garment}/${panel}`)
+  ]);
   const stranger =
     posted.placements.find(
       ({ id, garment, panel }) => !belongs(garment, panel) && !before.has(`${id}/${garment}/${panel}`)
     ) ??
-    posted.rules.matchGroups
-      .flatMap(({ points }) => points)
-      .find(({ garment, panel }) => !belongs(garment, panel));
+    pointsOf(posted).find(
+      ({ point, garment, panel }) =>
+        !belongs(garment, panel) && !before.has(`point ${point}/${garment}/${panel}`)
+    );
   if (stranger)
     throw new Problem(
       400,

@@ -3,7 +3,8 @@ import type { Garment, LayDocument } from '$lib/lay/document';
 import { needsOf } from '$lib/lay/needs';
 import { layPanelOf, panelKey, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
 import { same } from '$lib/lay/same';
-import { panelSetSchema, type ClothRole } from '$lib/pattern/panel';
+import type { ClothRole } from '$lib/pattern/panel';
+import { openPanelSet } from '$lib/pattern/panel-set';
 import type { PriceUnit } from '$lib/cloth/cost';
 import type { Minor } from '$lib/units/measure';
 import { database } from './database';
@@ -148,7 +149,7 @@ async function panelsOf(scope: Scope, styleVersion: string): Promise<readonly La
     .where({ studio_id: scope.studio, id: styleVersion })
     .first<{ panels: string } | undefined>('panels');
   if (!row) throw notFound('style version');
-  const panels = panelSetSchema.parse(JSON.parse(row.panels)).panels.map(layPanelOf);
+  const panels = openPanelSet(JSON.parse(row.panels)).panels.map(layPanelOf);
   resolved.set(key, panels);
   if (resolved.size > MOST_RESOLVED) resolved.delete(resolved.keys().next().value!);
   return panels;
