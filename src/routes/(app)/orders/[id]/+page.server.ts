@@ -110,6 +110,7 @@ export const actions: Actions = {
   },
   choose: async (event) => {
     const scope = allow(event, 'lays: change');
+    await orErrorPage(orders.read(scope, event.params.id));
     const values = typedValues(await event.request.formData());
     await orErrorPage(lays.choose(scope, values.lay ?? ''));
     back(event.params.id, []);

@@ -35,6 +35,7 @@ export const load: PageServerLoad = async (event) => {
 export const actions: Actions = {
   make: async (event) => {
     const scope = allow(event, 'guides: print');
+    await orErrorPage(lays.read(scope, event.params.id));
     const form = await readForm(event.request, guideForm(event.locals.studio!.lengthUnit));
     if (!form.ok) return form.refusal;
     await orErrorPage(guides.create(scope, form.data.revision, form.data.choice));
@@ -42,6 +43,7 @@ export const actions: Actions = {
   },
   stop: async (event) => {
     const scope = allow(event, 'guides: print');
+    await orErrorPage(lays.read(scope, event.params.id));
     const job = String((await event.request.formData()).get('job') ?? '');
     await orErrorPage(jobs.stop(scope, job));
     redirect(303, `/lays/${event.params.id}/guides`);

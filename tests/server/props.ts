@@ -1,0 +1,134 @@
+import { readFileSync } from 'node:fs';
+import { guideChoiceSchema } from '$lib/guide/guide-choice';
+import type { LayDocument } from '$lib/lay/document';
+import { database } from '$lib/server/database';
+import * as guides from '$lib/server/guides';
+import { newId } from '$lib/server/ids';
+import * as imports from '$lib/server/imports';
+import * as invitations from '$lib/server/invitations';
+import { registerAllJobs } from '$lib/server/job-kinds';
+import { JobRunner } from '$lib/server/job-runner';
+import * as layRelease from '$lib/server/lay-release';
+import * as lays from '$lib/server/lays';
+import * as sessions from '$lib/server/sessions';
+import { cookieJar, type House } from './cast';
+import { good, makeOrder } from './lay-orders';
+
+/*
+ * The props of a house: one of each thing that a route can name, made through the real modules, so that every handler
+ * of the permission matrix has something of its own studio and something of another one to be called with.
+ */
+
+export interface Props {
+  readonly studio: string;
+  readonly cutter: string;
+  readonly order: string;
+  readonly item: string;
+  readonly style: string;
+  readonly styleVersion: string;
+  readonly cloth: string;
+  readonly lining: string;
+  /** An open lay on the main cloth with a good document, one revision kept. */
+  readonly lay: string;
+  readonly layVersion: number;
+  readonly layDocument: LayDocument;
+  readonly revision: string;
+  readonly hash: string;
+  /** A released lay on the lining. */
+  readonly releasedLay: string;
+  /** An upload that was read and waits to be confirmed. */
+  readonly upload: string;
+  readonly file: string;
+  /** A guide that is made, and one that waits. */
+  readonly guide: string;
+  readonly waitingGuide: string;
+  readonly invitation: string;
+  /** The public id of a session of the owner. */
+  readonly session: string;
+}
+
+/** What no cutter may ever be handed: prices, as numbers and as people read them, and what the supplier is told. */
+export const price = { main: 76543210, lining: 87654321 };
+export const secrets = [
+  '76543210',
+  '765432.10',
+  '765,432.10',
+  '87654321',
+  '876543.21',
+  '876,543.21',
+  'Mill by the weir'
+];
+
+/** Fills a house; the database is the application's. */
+export async function makeProps(house: House): Promise<Props> {
+  const { scope } = house.owner;
+  const db = database();
+  const rows = await makeOrder(scope, { number: 7 });
+  await db('studios').where({ id: house.id }).update({ last_order_number: 7 });
+  const typed = JSON.stringify({ fullWidth: '104 cm', usableWidth: '100 cm' });
+  await db('cloths').where({ id: rows.main }).update({ price: price.main, typed });
+  await db('cloths').where({ id: rows.lining }).update({ price: price.lining, typed });
+  const { style_id: style } = await db('style_versions').where({ id: rows.styleVersion }).first('style_id');
+
+  const { id: lay } = await lays.create(scope, { orderId: rows.order, clothId: rows.main, name: 'First' });
+  const layDocument = good((await lays.read(scope, lay)).document);
+  await lays.save(scope, lay, { version: 1, saveId: newId(), document: layDocument });
+  const { version: layVersion } = await lays.read(scope, lay);
+  const kept = await layRelease.keep(scope, lay, { version: layVersion, name: 'Kept' });
+
+  const { id: releasedLay } = await lays.create(scope, {
+    orderId: rows.order,
+    clothId: rows.lining,
+    name: 'Lining'
+  });
+  const loose = (await lays.read(scope, releasedLay)).document;
+  const placements = [
+    {
+      id: 'p1',
+      panel: 'inside',
+      garment: loose.garments[0]!.id,
+      x: 0,
+      y: 100,
+      turn: 0,
+      flip: false,
+      locked: false
+    }
+  ];
+  await lays.save(scope, releasedLay, { version: 1, saveId: newId(), document: { ...loose, placements } });
+  const { version } = await lays.read(scope, releasedLay);
+  await layRelease.release(scope, releasedLay, { version, name: 'For cutting' });
+
+  const upload = await imports.create(scope, {
+    name: 'sample.svg',
+    bytes: readFileSync('static/sample.svg')
+  });
+  registerAllJobs();
+  const print = (choice: unknown) => guides.create(scope, kept.id, guideChoiceSchema.parse(choice));
+  const { job: guide } = await print({ kind: 'sheets', paper: 'A4' });
+  await new JobRunner().drain();
+  const { job: waitingGuide } = await print({ kind: 'whole' });
+  const jar = cookieJar();
+  await sessions.start(jar, house.owner.id, house.id, 'another browser of the owner');
+  return {
+    studio: house.id,
+    cutter: house.cutter.id,
+    order: rows.order,
+    item: rows.item,
+    style,
+    styleVersion: rows.styleVersion,
+    cloth: rows.main,
+    lining: rows.lining,
+    lay,
+    layVersion,
+    layDocument,
+    revision: kept.id,
+    hash: kept.hash,
+    releasedLay,
+    upload,
+    file: (await imports.read(scope, upload)).fileId,
+    guide,
+    waitingGuide,
+    invitation: await invitations.create(scope, { email: 'guest@far.example', role: 'cutter' }),
+    session: (await sessions.list(house.owner.id))[0]!.publicId
+  };
+}

@@ -1,0 +1,371 @@
+import { newId } from '$lib/server/ids';
+import type { Permission } from '$lib/server/permissions';
+import type { Call } from './cast';
+import type { Props } from './props';
+
+/*
+ * Every handler of every route, and who may use it: what permission-matrix.test.ts goes through. A route that is not
+ * here fails the suite. Keys are the path and, after a blank, the method of an API route, 'load' or '?/action' of a page.
+ */
+
+export interface Entry {
+  /** A permission of the table; 'anyone' also signed out; 'person': signed in, in a studio or not. */
+  readonly access: Permission | 'anyone' | 'person';
+  /** How the handler is called about the things of `own`: its studio's people must be answered. */
+  readonly call?: (own: Props) => Call;
+  /**
+   * Calls that name, beside things of `own`, one of another studio, in a body or a query. Each is answered 404, or 400
+   * at a field, and changes nothing. Foreign ids in paths are tried by the matrix itself.
+   */
+  readonly foreign?: (own: Props, other: Props) => Readonly<Record<string, Call>>;
+  /** The path's own ids are secrets of their own kind (one-time links, printed codes): 404 is not asked of them. */
+  readonly byCode?: true;
+}
+
+const params = (values: Record<string, string>, rest: Call = {}): Call => ({ params: values, ...rest });
+const clothForm = {
+  name: 'Linen',
+  fibre: 'linen',
+  fullWidth: '150 cm',
+  usableWidth: '145 cm',
+  sides: 'different',
+  nap: 'none',
+  colour: '#2F5D7C'
+};
+const lineForm = (own: Props, changes: Record<string, string> = {}) => ({
+  version: '1',
+  style: own.styleVersion,
+  label: '40',
+  quantity: '1',
+  'cloth.main': own.cloth,
+  'cloth.lining': own.lining,
+  ...changes
+});
+const token = 'x'.repeat(43);
+const onOrder = (own: Props, form?: Record<string, string>): Call =>
+  params({ id: own.order }, form ? { form } : {});
+const onLay = (own: Props, json?: unknown): Call =>
+  params({ id: own.lay }, json === undefined ? {} : { json });
+const save = (own: Props, document: unknown = own.layDocument): Call => ({
+  params: { id: own.lay },
+  method: 'PUT',
+  json: { version: own.layVersion, saveId: newId(), document }
+});
+
+export const routeTable: Readonly<Record<string, Entry>> = {
+  // The door.
+  '/ load': { access: 'anyone' },
+  '/(door) layout': { access: 'anyone' },
+  '/health GET': { access: 'anyone' },
+  '/sign-in load': { access: 'anyone' },
+  '/sign-in ?/default': {
+    access: 'anyone',
+    call: () => ({ form: { email: 'who@far.example', password: 'x' } })
+  },
+  '/sign-out POST': { access: 'anyone' },
+  '/sign-up load': { access: 'anyone' },
+  '/sign-up ?/default': {
+    access: 'anyone',
+    call: () => ({ form: { studioName: 'New', name: 'Who', email: 'who@far.example' } })
+  },
+  '/sign-up/[token] load': { access: 'anyone', byCode: true, call: () => params({ token }) },
+  '/sign-up/[token] ?/default': {
+    access: 'anyone',
+    byCode: true,
+    call: () => params({ token }, { form: { password: 'nine copper thimbles sing' } })
+  },
+  '/forgotten ?/default': { access: 'anyone', call: () => ({ form: { email: 'who@far.example' } }) },
+  '/reset/[token] load': { access: 'anyone', byCode: true, call: () => params({ token }) },
+  '/reset/[token] ?/default': {
+    access: 'anyone',
+    byCode: true,
+    call: () => params({ token }, { form: { password: 'nine copper thimbles sing' } })
+  },
+  '/invitation/[token] load': { access: 'anyone', byCode: true, call: () => params({ token }) },
+  '/invitation/[token] ?/accept': {
+    access: 'person',
+    byCode: true,
+    call: () => params({ token }, { form: {} })
+  },
+  '/invitation/[token] ?/join': {
+    access: 'anyone',
+    byCode: true,
+    call: () => params({ token }, { form: { name: 'Who', password: 'nine copper thimbles sing' } })
+  },
+  '/new-address/[token] load': { access: 'person', byCode: true, call: () => params({ token }) },
+  '/new-address/[token] ?/default': {
+    access: 'person',
+    byCode: true,
+    call: () => params({ token }, { form: {} })
+  },
+  '/r/[hash] load': { access: 'anyone', byCode: true, call: (own) => params({ hash: own.hash }) },
+
+  // A person's own.
+  '/(app) layout': { access: 'person' },
+  '/profile load': { access: 'person' },
+  '/profile ?/rename': { access: 'person', call: () => ({ form: { name: 'Odile' } }) },
+  '/profile ?/changeAddress': {
+    access: 'person',
+    call: () => ({ form: { email: 'new@far.example', addressPassword: 'x' } })
+  },
+  '/profile ?/changePassword': {
+    access: 'person',
+    call: () => ({ form: { password: 'x', newPassword: 'nine copper thimbles sing' } })
+  },
+  '/profile ?/endSession': {
+    access: 'person',
+    call: () => ({ form: { publicId: 'none of mine' } }),
+    foreign: (_own, other) => ({ session: { form: { publicId: other.session } } })
+  },
+  '/profile ?/endOthers': { access: 'person' },
+  '/profile ?/endAll': { access: 'person' },
+  '/studios load': { access: 'person' },
+  '/studios ?/enter': {
+    access: 'person',
+    call: (own) => ({ form: { id: own.studio } }),
+    foreign: (_own, other) => ({ studio: { form: { id: other.studio } } })
+  },
+  '/studios ?/open': { access: 'person', call: () => ({ form: { name: 'Second bench' } }) },
+
+  // Owners.
+  '/people load': { access: 'people: manage' },
+  '/people ?/invite': {
+    access: 'people: manage',
+    call: () => ({ form: { email: 'somebody@far.example', role: 'cutter' } })
+  },
+  '/people ?/takeBack': {
+    access: 'people: manage',
+    call: (own) => ({ form: { id: own.invitation } }),
+    foreign: (_own, other) => ({ invitation: { form: { id: other.invitation } } })
+  },
+  '/people ?/changeRole': {
+    access: 'people: manage',
+    call: (own) => ({ form: { userId: own.cutter, role: 'patternMaker' } }),
+    foreign: (_own, other) => ({ person: { form: { userId: other.cutter, role: 'owner' } } })
+  },
+  '/people ?/disable': {
+    access: 'people: manage',
+    call: (own) => ({ form: { userId: own.cutter } }),
+    foreign: (_own, other) => ({ person: { form: { userId: other.cutter } } })
+  },
+  '/people ?/enable': {
+    access: 'people: manage',
+    call: (own) => ({ form: { userId: own.cutter } }),
+    foreign: (_own, other) => ({ person: { form: { userId: other.cutter } } })
+  },
+  '/settings load': { access: 'studio: manage' },
+  '/settings ?/default': {
+    access: 'studio: manage',
+    call: () => ({ form: { name: 'Row', currency: 'EUR', lengthUnit: 'cm', timeZone: 'UTC' } })
+  },
+
+  // Cloths.
+  '/cloths load': { access: 'cloths: see' },
+  '/cloths/new load': { access: 'cloths: change' },
+  '/cloths/new ?/default': { access: 'cloths: change', call: () => ({ form: clothForm }) },
+  '/cloths/[id] load': { access: 'cloths: see', call: (own) => params({ id: own.cloth }) },
+  '/cloths/[id] ?/save': {
+    access: 'cloths: change',
+    call: (own) => params({ id: own.cloth }, { form: clothForm })
+  },
+  '/cloths/[id] ?/archive': {
+    access: 'cloths: change',
+    call: (own) => params({ id: own.cloth }, { form: {} })
+  },
+  '/cloths/[id] ?/putBack': {
+    access: 'cloths: change',
+    call: (own) => params({ id: own.cloth }, { form: {} })
+  },
+
+  // Orders.
+  '/orders load': { access: 'orders: see' },
+  '/orders ?/fillDemo': { access: 'demo: clear' },
+  '/orders ?/clearDemo': { access: 'demo: clear' },
+  '/orders/new load': { access: 'orders: change' },
+  '/orders/new ?/default': {
+    access: 'orders: change',
+    call: (own) => ({ form: { clientName: 'Edda', style: own.styleVersion, quantity: '1' } }),
+    foreign: (_own, other) => ({
+      style: { form: { clientName: 'Edda', style: other.styleVersion, quantity: '1' } }
+    })
+  },
+  '/orders/[id] load': { access: 'orders: see', call: (own) => onOrder(own) },
+  '/orders/[id] ?/save': {
+    access: 'orders: change',
+    call: (own) => onOrder(own, { version: '1', clientName: 'Edda', stage: 'enquiry' })
+  },
+  '/orders/[id] ?/addLine': {
+    access: 'orders: change',
+    call: (own) => onOrder(own, lineForm(own)),
+    foreign: (own, other) => ({
+      style: onOrder(own, lineForm(own, { style: other.styleVersion })),
+      cloth: onOrder(own, lineForm(own, { 'cloth.main': other.cloth }))
+    })
+  },
+  '/orders/[id] ?/saveLine': {
+    access: 'orders: change',
+    call: (own) => onOrder(own, lineForm(own, { what: own.item })),
+    foreign: (own, other) => ({
+      line: onOrder(own, lineForm(own, { what: other.item })),
+      style: onOrder(own, lineForm(own, { what: own.item, style: other.styleVersion })),
+      cloth: onOrder(own, lineForm(own, { what: own.item, 'cloth.lining': other.lining }))
+    })
+  },
+  '/orders/[id] ?/removeLine': {
+    access: 'orders: change',
+    call: (own) => onOrder(own, { version: '1', what: own.item }),
+    foreign: (own, other) => ({ line: onOrder(own, { version: '1', what: other.item }) })
+  },
+  '/orders/[id] ?/newLay': {
+    access: 'lays: change',
+    call: (own) => onOrder(own, { cloth: own.cloth }),
+    foreign: (own, other) => ({ cloth: onOrder(own, { cloth: other.cloth }) })
+  },
+  '/orders/[id] ?/choose': {
+    access: 'lays: change',
+    call: (own) => onOrder(own, { lay: own.lay }),
+    foreign: (own, other) => ({ lay: onOrder(own, { lay: other.lay }) })
+  },
+  '/api/orders/[id]/lays POST': {
+    access: 'lays: change',
+    call: (own) => params({ id: own.order }, { json: { clothId: own.cloth } }),
+    foreign: (own, other) => ({ cloth: params({ id: own.order }, { json: { clothId: other.cloth } }) })
+  },
+
+  // Styles and uploads.
+  '/styles load': { access: 'styles: see' },
+  '/styles/new load': {
+    access: 'styles: change',
+    foreign: (_own, other) => ({ style: { path: `/styles/new?style=${other.style}` } })
+  },
+  '/styles/new ?/default': {
+    access: 'styles: change',
+    call: () => ({ form: { files: drawing() } }),
+    foreign: (_own, other) => ({ style: { form: { files: drawing(), style: other.style } } })
+  },
+  '/styles/[id] load': { access: 'styles: see', call: (own) => params({ id: own.style }) },
+  '/styles/[id] ?/words': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.style }, { form: { name: 'Bodice', kind: '', note: '' } })
+  },
+  '/styles/[id] ?/version': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.style }, { form: { basedOn: '1' } })
+  },
+  '/styles/[id] ?/archive': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.style }, { form: {} })
+  },
+  '/styles/[id] ?/putBack': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.style }, { form: {} })
+  },
+  '/styles/imports/[id] load': { access: 'styles: change', call: (own) => params({ id: own.upload }) },
+  '/styles/imports/[id] ?/save': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.upload }, { form: { styleName: 'Sample' } })
+  },
+  '/styles/imports/[id] ?/leaveOut': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.upload }, { form: { outline: 'o1' } })
+  },
+  '/styles/imports/[id] ?/remove': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.upload }, { form: {} })
+  },
+  '/api/files/[id] GET': { access: 'styles: see', call: (own) => params({ id: own.file }) },
+
+  // Lays.
+  '/lays load': { access: 'lays: see' },
+  '/lays/[id] load': { access: 'lays: see', call: (own) => onLay(own) },
+  '/lays/[id]/compare load': { access: 'lays: see', call: (own) => onLay(own) },
+  '/api/lays/[id] GET': { access: 'lays: see', call: (own) => onLay(own) },
+  '/api/lays/[id] PUT': {
+    access: 'lays: change',
+    call: (own) => save(own),
+    foreign: (own, other) => ({
+      // Needs and garments are the order's; what a document says about them is not believed.
+      document: save(own, other.layDocument),
+      garment: save(own, {
+        ...own.layDocument,
+        garments: [...own.layDocument.garments, ...other.layDocument.garments],
+        placements: [...own.layDocument.placements, ...other.layDocument.placements].map((placement, i) => ({
+          ...placement,
+          id: `p${i}`
+        }))
+      })
+    })
+  },
+  '/api/lays/[id]/check POST': {
+    access: 'lays: see',
+    call: (own) => onLay(own, { version: own.layVersion })
+  },
+  '/api/lays/[id]/choose POST': { access: 'lays: change', call: (own) => onLay(own, {}) },
+  '/api/lays/[id]/duplicate POST': { access: 'lays: change', call: (own) => onLay(own, { name: 'Copy' }) },
+  '/api/lays/[id]/release POST': {
+    access: 'lays: release',
+    call: (own) => onLay(own, { version: own.layVersion, name: 'Now' })
+  },
+  '/api/lays/[id]/reopen POST': {
+    access: 'lays: release',
+    call: (own) => params({ id: own.releasedLay }, { json: {} })
+  },
+  '/api/lays/[id]/restore POST': {
+    access: 'lays: change',
+    call: (own) => onLay(own, { number: 1, version: own.layVersion, saveId: newId() })
+  },
+  '/api/lays/[id]/revisions GET': { access: 'lays: see', call: (own) => onLay(own) },
+  '/api/lays/[id]/revisions POST': {
+    access: 'lays: change',
+    call: (own) => onLay(own, { version: own.layVersion, name: 'Again' })
+  },
+  '/api/lays/[id]/revisions/[number] GET': {
+    access: 'lays: see',
+    call: (own) => params({ id: own.lay, number: '1' })
+  },
+
+  // Guides and jobs.
+  '/lays/[id]/guides load': { access: 'guides: print', call: (own) => onLay(own) },
+  '/lays/[id]/guides ?/make': {
+    access: 'guides: print',
+    call: (own) => params({ id: own.lay }, { form: { revision: own.revision, kind: 'whole' } }),
+    foreign: (own, other) => ({
+      revision: params({ id: own.lay }, { form: { revision: other.revision, kind: 'whole' } })
+    })
+  },
+  '/lays/[id]/guides ?/stop': {
+    access: 'guides: print',
+    call: (own) => params({ id: own.lay }, { form: { job: own.waitingGuide } }),
+    foreign: (own, other) => ({ job: params({ id: own.lay }, { form: { job: other.waitingGuide } }) })
+  },
+  '/api/revisions/[id]/guides POST': {
+    access: 'guides: print',
+    call: (own) => params({ id: own.revision }, { json: { kind: 'whole' } })
+  },
+  '/api/guides/[job]/file GET': { access: 'guides: print', call: (own) => params({ job: own.guide }) },
+  '/api/jobs/[id] GET': { access: 'studio: enter', call: (own) => params({ id: own.guide }) },
+  '/api/jobs/[id]/events GET': { access: 'studio: enter', call: (own) => params({ id: own.guide }) },
+  '/api/jobs/[id]/stop POST': {
+    access: 'studio: enter',
+    call: (own) => params({ id: own.waitingGuide }, { json: {} })
+  }
+};
+
+/** Pages without a load of their own: the same for everybody, nothing of a studio in them. */
+export const plainPages: readonly string[] = [
+  '/help',
+  '/help/cautions',
+  '/help/keys',
+  '/help/readings',
+  '/help/words',
+  '/look'
+];
+
+function drawing(): File {
+  return new File(
+    [
+      '<svg xmlns="http://www.w3.org/2000/svg" width="10cm" height="10cm"><rect width="90" height="90"/></svg>'
+    ],
+    'square.svg'
+  );
+}
