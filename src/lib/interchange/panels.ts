@@ -1,4 +1,6 @@
 import type { Point } from '$lib/geometry/point';
+import { panelFindings } from '$lib/pattern/panel-check';
+import type { PanelFaultKind } from '$lib/pattern/panel-fault';
 import { panelSchema, type Panel, type Path, type Segment } from '$lib/pattern/panel';
 import { angleOf, innerOf, type ImportChoices, type PanelChoice } from './choices';
 import { angleBetween, edgesAt, straightness, type OutlineEdge } from './edges';
@@ -59,6 +61,10 @@ export function panelsFrom(
         : null;
     if (!panel || problems.length > before) continue;
     const checked = panelSchema.safeParse(panel);
+    const faults = checked.success
+      ? panelFindings(checked.data).filter(({ severity }) => severity === 'stops')
+      : [];
+    for (const { kind, message } of faults.slice(0, 3)) refuse(FAULT_FIELDS[kind] ?? 'corners', message);
     if (checked.success) panels.push(checked.data);
     else for (const issue of checked.error.issues.slice(0, 3)) refuse(fieldOf(issue.path), issue.message);
   }
@@ -66,6 +72,22 @@ export function panelsFrom(
     problems.push({ outline: '', field: 'take', message: 'Choose at least one outline to be a panel.' });
   return { panels, problems };
 }
+
+/** Where the person mends what keeps a panel from being laid; corners for what is not named. */
+const FAULT_FIELDS: Partial<Record<PanelFaultKind, keyof PanelChoice>> = {
+  'crosses-itself': 'outline',
+  'no-area': 'outline',
+  clockwise: 'outline',
+  'grain-without-length': 'grain',
+  'fold-not-straight': 'fold',
+  'fold-off-grain': 'fold',
+  'fold-crossed': 'fold',
+  'allowance-closes-bay': 'allowance',
+  'allowance-eats-panel': 'allowance',
+  'cut-out-unclosed': 'inner',
+  'cut-out-crosses-itself': 'inner',
+  'cut-out-outside': 'inner'
+};
 
 /** The choice that a fault of the finished panel goes back to. */
 function fieldOf(path: readonly PropertyKey[]): keyof PanelChoice {

@@ -1,5 +1,6 @@
 import type { Knex } from 'knex';
-import { PANEL_SET_SCHEMA, panelSetSchema, type Panel } from '$lib/pattern/panel';
+import { PANEL_SET_SCHEMA, type Panel, type PanelSet } from '$lib/pattern/panel';
+import { openPanelSet, UnreadablePanelSet } from '$lib/pattern/panel-set';
 import * as audit from './audit';
 import { database } from './database';
 import { newId } from './ids';
@@ -188,7 +189,7 @@ export async function readVersion(scope: Scope, versionId: string): Promise<Styl
   return {
     ...listedVersion(row),
     styleId: row.styleId,
-    panels: panelSetSchema.parse(JSON.parse(row.panels!)).panels
+    panels: openPanelSet(JSON.parse(row.panels!)).panels
   };
 }
 
@@ -212,6 +213,17 @@ interface Options {
   readonly db?: Knex;
 }
 
+/** Panels that come in go through the same door as stored ones. */
+function checkedSet(panels: readonly Panel[]): PanelSet {
+  try {
+    return openPanelSet({ schema: PANEL_SET_SCHEMA, panels });
+  } catch (refusal) {
+    if (refusal instanceof UnreadablePanelSet)
+      throw new Problem(400, 'invalid-panels', 'The panels do not fit', refusal.message);
+    throw refusal;
+  }
+}
+
 async function insertVersion(
   scope: Scope,
   styleId: string,
@@ -220,17 +232,15 @@ async function insertVersion(
   now: number,
   db: Knex
 ): Promise<string> {
-  const set = panelSetSchema.safeParse({ schema: PANEL_SET_SCHEMA, panels: input.panels });
-  if (!set.success)
-    throw new Problem(400, 'invalid-panels', 'The panels do not fit', set.error.issues[0]?.message ?? '');
+  const set = checkedSet(input.panels);
   const id = newId(now);
   await db('style_versions').insert({
     id,
     studio_id: scope.studio,
     style_id: styleId,
     number,
-    panels: JSON.stringify(set.data),
-    panel_count: set.data.panels.length,
+    panels: JSON.stringify(set),
+    panel_count: set.panels.length,
     source_file_id: input.sourceFile ?? null,
     note: input.note ?? '',
     created_by: scope.user,

@@ -2,6 +2,7 @@ import { fail, redirect } from '@sveltejs/kit';
 import { z } from 'zod';
 import type { PieceShape } from '$lib/pattern/piece-shape';
 import type { Panel } from '$lib/pattern/panel';
+import { PanelFault } from '$lib/pattern/panel-fault';
 import { resolvePanel } from '$lib/pattern/resolve';
 import { allow, orErrorPage } from '$lib/server/guard';
 import { may } from '$lib/server/permissions';
@@ -15,7 +16,7 @@ function shapeOf(panel: Panel): { shape: PieceShape; fault: null } | { shape: nu
   try {
     return { shape: resolvePanel(panel), fault: null };
   } catch (fault) {
-    if (fault instanceof RangeError) return { shape: null, fault: fault.message };
+    if (fault instanceof PanelFault) return { shape: null, fault: fault.finding.message };
     throw fault;
   }
 }
