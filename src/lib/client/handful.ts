@@ -1,4 +1,4 @@
-import type { Outline, Point } from '$lib/geometry/point';
+import type { Point } from '$lib/geometry/point';
 import type { Live, LiveReport } from '$lib/lay/live';
 import type { LoosePiece } from '$lib/lay/needs';
 import { stepped, type TablePiece } from './table-pieces';
@@ -7,9 +7,8 @@ import { stepped, type TablePiece } from './table-pieces';
  * The pieces that are held, lifted off the cloth or the Rail, and what the live check says of where they are.
  */
 
-/** An overlap as it is drawn: where, how deep, with what. */
+/** An overlap of a held piece: where, how deep, with what. */
 export interface HeldOverlap {
-  readonly region: readonly Outline[];
   readonly at: Point;
   readonly depth: number;
   readonly piece: string;
@@ -45,15 +44,12 @@ export class Handful {
     return this.#report;
   }
 
-  /** Overlaps of the held pieces, deepest first, with their regions. */
+  /** Overlaps of the held pieces, deepest first. */
   overlaps(step: Point): HeldOverlap[] {
-    const pairs = new Map<string, Omit<HeldOverlap, 'region'>>();
+    const pairs = new Map<string, HeldOverlap>();
     for (const piece of this.report(step).pieces)
       for (const { with: other, depth, at } of piece.overlaps)
         pairs.set([piece.id, other].sort().join(), { at, depth, piece: piece.id, other });
-    return [...pairs.values()]
-      .sort((a, b) => b.depth - a.depth)
-      .slice(0, MOST_HATCHED)
-      .map((pair) => ({ ...pair, region: this.live.regionOf(pair.piece, pair.other).region }));
+    return [...pairs.values()].sort((a, b) => b.depth - a.depth).slice(0, MOST_HATCHED);
   }
 }

@@ -1,6 +1,8 @@
 import type { Point } from '$lib/geometry/point';
 import { snap } from '$lib/geometry/point';
 import * as commands from '$lib/lay/commands';
+import type { Edit } from '$lib/lay/edit';
+import { exactOf } from '$lib/lay/exact';
 import type { LayDocument } from '$lib/lay/document';
 import {
   canRedo,
@@ -91,7 +93,7 @@ export class OpenLay {
   readonly loose: readonly LoosePiece[] = $derived(loose(this.document, this.book));
   readonly readings: Readings = $derived(readingsOf(this.document, this.book));
   readonly pickedPieces: readonly TablePiece[] = $derived.by(() => {
-    const byId = new Map(this.pieces.map((piece) => [piece.id, piece]));
+    const byId = indexById(this.pieces);
     return this.picked.flatMap((id) => byId.get(id) ?? []);
   });
   readonly readOnly: boolean = $derived(this.facts.state !== 'open');
@@ -130,7 +132,7 @@ export class OpenLay {
   }
 
   /** Does an edit: one step of the history, saved soon. Edits of one `gesture` are one step. False when refused. */
-  do(edit: commands.Edit, gesture: string | null = null): boolean {
+  do(edit: Edit, gesture: string | null = null): boolean {
     if (this.readOnly) {
       this.say('This lay is released: reopen it to change it.', true);
       return false;
@@ -170,7 +172,7 @@ export class OpenLay {
 
   #edited(): void {
     const { document } = this;
-    const there = new Set(document.placements.map(({ id }) => id));
+    const there = indexById(document.placements);
     if (this.picked.some((id) => !there.has(id))) this.picked = this.picked.filter((id) => there.has(id));
     this.saving.edited(document);
     this.checking.edited(document);
@@ -201,7 +203,7 @@ export class OpenLay {
 
   /** Picks many, beside what is picked or instead of it. */
   pickAll(ids: readonly string[], adds: boolean): void {
-    this.picked = adds ? [...new Set([...this.picked, ...ids])] : [...ids];
+    this.picked = adds ? [...this.picked, ...ids.filter((id) => !this.isPicked(id))] : [...ids];
     this.say(
       ids.length === 0 ? 'No piece picked.' : `${ids.length} ${ids.length === 1 ? 'piece' : 'pieces'} picked.`
     );
@@ -209,7 +211,7 @@ export class OpenLay {
 
   /** What a placed piece is and where it lies, in words. */
   wordsFor(piece: TablePiece): string {
-    const { fromStart, fromSelvedge, turn } = commands.exactOf(piece.panel, piece.placement);
+    const { fromStart, fromSelvedge, turn } = exactOf(piece.panel, piece.placement);
     const measure = (mm: number): string => formatLength(mm, this.world.unit, { decimals: 1 });
     return (
       `${nameOf(this.document, this.book, piece.placement)}: ${measure(fromStart)} from the zero end, ` +
@@ -431,4 +433,8 @@ export class OpenLay {
     this.saving.stop();
     this.checking.stop();
   }
+}
+
+function indexById<T extends { readonly id: string }>(things: readonly T[]): ReadonlyMap<string, T> {
+  return new Map(things.map((thing) => [thing.id, thing]));
 }

@@ -23,6 +23,8 @@ export interface Distance {
 /** Something the check found, as it is drawn. */
 export interface Fault {
   readonly region: readonly Outline[];
+  /** While pieces are held: the two that overlap. What both cover is hatched, without working the region out. */
+  readonly shared?: readonly [DrawnPiece, DrawnPiece];
   readonly place: Point | null;
   readonly words: string;
   readonly stops: boolean;
@@ -55,7 +57,7 @@ export function drawOverlay(
   ratio: number
 ): void {
   drawLengthUsed(ctx, view, overlay);
-  for (const fault of overlay.faults) drawFault(ctx, view, fault);
+  for (const fault of overlay.faults) drawFault(ctx, view, fault, ratio);
   drawChosen(ctx, view, overlay, ratio);
   for (const distance of overlay.distances) drawDistance(ctx, view, distance);
   const selvedge = Math.max(6 / view.scale, (overlay.strip.fullWidth - overlay.strip.usableWidth) / 2);
@@ -114,8 +116,19 @@ function drawLengthUsed(ctx: CanvasRenderingContext2D, view: Viewport, overlay: 
   );
 }
 
-function drawFault(ctx: CanvasRenderingContext2D, view: Viewport, fault: Fault): void {
+function drawFault(ctx: CanvasRenderingContext2D, view: Viewport, fault: Fault, ratio: number): void {
   const ink = fault.stops ? dyes.madder : dyes.weld;
+  if (fault.shared) {
+    ctx.save();
+    for (const piece of fault.shared) {
+      usePlacement(ctx, view, piece.placement, ratio);
+      ctx.clip(linesOf(piece.shape).cut, 'evenodd');
+    }
+    ctx.setTransform(ratio, 0, 0, ratio, 0, 0);
+    ctx.fillStyle = hatch(ctx, ink, 6);
+    ctx.fillRect(0, 0, view.width, view.height);
+    ctx.restore();
+  }
   if (fault.region.length > 0) {
     ctx.beginPath();
     for (const outline of fault.region) {
