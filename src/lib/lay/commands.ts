@@ -1,81 +1,19 @@
-import { boundingBox } from '$lib/geometry/polygon';
-import { cosSin, placeOutline, snapPlacement, snapTurn, type Placement } from '$lib/geometry/placement';
-import { snap, type Box, type Point } from '$lib/geometry/point';
+import { cosSin, snapPlacement, snapTurn } from '$lib/geometry/placement';
+import type { Point } from '$lib/geometry/point';
 import type { Degrees, Millimetres } from '$lib/units/measure';
-import type { LayDocument, LayPlacement } from './document';
-import { balance, panelOfPlacement, type LoosePiece } from './needs';
-import { panelOf, type LayPanel, type PanelBook } from './panel-book';
+import type { LayDocument } from './document';
+import { boxOf, centred, chosen, middleOf, replaced, subject, type Edit, type Ids } from './edit';
+import { balance, type LoosePiece } from './needs';
+import { panelOf, type PanelBook } from './panel-book';
 import { allowedTurns, nearestTurn, nextTurn, withinTolerance } from './turns';
 import { degrees, millimetres, nameOf, pieceName, pieces } from './wording';
 import { flipFor, flipIsFree } from './yields';
 
 /*
- * Everything a person does to the pieces of a lay. A command gives a new document and says what it did, or refuses and
+ * Everything a person does to the pieces of a lay, one by one or several; exact figures are in exact.ts, snug in snug.ts,
+ * whole garments in arrangement.ts. A command gives a new document and says what it did, or refuses and
  * says why. Locked pieces never move. Ids of new placements come from outside: this code has no randomness.
  */
-
-export type Edit =
-  | { readonly document: LayDocument; readonly said: string; readonly refused?: undefined }
-  | { readonly refused: string; readonly document?: undefined; readonly said?: undefined };
-
-type Ids = readonly string[];
-
-/** Chosen placements with their panels, apart from the locked ones. */
-interface Chosen {
-  readonly free: readonly { readonly placement: LayPlacement; readonly panel: LayPanel }[];
-  readonly locked: number;
-}
-
-function chosen(document: LayDocument, book: PanelBook, ids: Ids): Chosen | { refused: string } {
-  const wanted = new Set(ids);
-  const all = document.placements.filter(({ id }) => wanted.has(id));
-  if (all.length === 0) return { refused: 'No piece is chosen.' };
-  const unlocked = all.filter(({ locked }) => !locked);
-  const free = unlocked.flatMap((placement) => {
-    const panel = panelOfPlacement(document, book, placement);
-    return panel ? [{ placement, panel }] : [];
-  });
-  if (free.length === 0)
-    return {
-      refused:
-        unlocked.length > 0
-          ? 'The outline of this piece is not known here. Put it back on the Rail.'
-          : all.length === 1
-            ? `${nameOf(document, book, all[0]!)} is locked. Unlock it first.`
-            : `All ${all.length} chosen pieces are locked. Unlock them first.`
-    };
-  return { free, locked: all.length - unlocked.length };
-}
-
-/** The document with some placements replaced. */
-function replaced(document: LayDocument, changed: readonly LayPlacement[]): LayDocument {
-  const byId = new Map(changed.map((placement) => [placement.id, placement]));
-  return { ...document, placements: document.placements.map((old) => byId.get(old.id) ?? old) };
-}
-
-/** 'Front (left) of Ada' or '4 pieces', with what stayed because it is locked. */
-function subject(document: LayDocument, book: PanelBook, { free, locked }: Chosen): string {
-  const what = free.length === 1 ? nameOf(document, book, free[0]!.placement) : pieces(free.length);
-  return locked > 0 ? `${what} (${locked} locked, left alone)` : what;
-}
-
-function boxOf(panel: LayPanel, placement: Placement): Box {
-  return boundingBox(placeOutline(panel.shape.cut, placement));
-}
-
-function middleOf(boxes: readonly Box[]): Point {
-  const minX = Math.min(...boxes.map((box) => box.minX));
-  const maxX = Math.max(...boxes.map((box) => box.maxX));
-  const minY = Math.min(...boxes.map((box) => box.minY));
-  const maxY = Math.max(...boxes.map((box) => box.maxY));
-  return { x: (minX + maxX) / 2, y: (minY + maxY) / 2 };
-}
-
-/** `next` moved so that the middle of its box lies at `middle`, on the grid. */
-function centred<T extends Placement>(panel: LayPanel, next: T, middle: Point): T {
-  const { x, y } = middleOf([boxOf(panel, next)]);
-  return { ...next, ...snapPlacement({ ...next, x: next.x + middle.x - x, y: next.y + middle.y - y }) };
-}
 
 /**
  * Takes `piece` from the Rail and lays it with the middle of its box at `at`, at the first turn that it is allowed, with
@@ -251,59 +189,6 @@ export function flip(document: LayDocument, book: PanelBook, ids: Ids): Edit {
   };
 }
 
-/** Exact figures for one piece; what is left out stays as it is. */
-export interface Exact {
-  /** Distance of the nearest cut edge from the zero end. */
-  readonly fromStart?: Millimetres;
-  /** Distance of the nearest cut edge from the near selvedge. */
-  readonly fromSelvedge?: Millimetres;
-  readonly turn?: Degrees;
-}
-
-/** What `setExact` would have to be given to change nothing. */
-export function exactOf(panel: LayPanel, placement: Placement): Required<Exact> {
-  const box = boxOf(panel, placement);
-  return { fromStart: snap(box.minX), fromSelvedge: snap(box.minY), turn: placement.turn };
-}
-
-/** Lays one piece at exact distances and an exact turn; a turn beyond the grain tolerance is refused. */
-export function setExact(document: LayDocument, book: PanelBook, id: string, exact: Exact): Edit {
-  const picked = chosen(document, book, [id]);
-  if ('refused' in picked) return picked;
-  const { placement, panel } = picked.free[0]!;
-  let next = placement;
-  if (exact.turn !== undefined) {
-    const turn = snapTurn(exact.turn);
-    if (withinTolerance(panel, document.strip, turn) !== turn) {
-      const nearest = nearestTurn(panel, document.strip, turn);
-      return {
-        refused: `${nameOf(document, book, placement)} may lie at ${(
-          allowedTurns(panel, document.strip) ?? [nearest]
-        )
-          .map((allowed) => degrees(allowed))
-          .join(', ')}, within ${degrees(panel.grainTolerance)}; got ${degrees(turn)}.`
-      };
-    }
-    next = centred(panel, { ...next, turn }, middleOf([boxOf(panel, placement)]));
-  }
-  const box = boxOf(panel, next);
-  next = {
-    ...next,
-    ...snapPlacement({
-      ...next,
-      x: next.x + (exact.fromStart === undefined ? 0 : exact.fromStart - box.minX),
-      y: next.y + (exact.fromSelvedge === undefined ? 0 : exact.fromSelvedge - box.minY)
-    })
-  };
-  const now = exactOf(panel, next);
-  return {
-    document: replaced(document, [next]),
-    said: `${nameOf(document, book, placement)} lies ${millimetres(now.fromStart)} from the zero end, ${millimetres(
-      now.fromSelvedge
-    )} from the near selvedge, turned ${degrees(now.turn)}.`
-  };
-}
-
 /** Locks or unlocks the chosen pieces. */
 export function setLocked(document: LayDocument, book: PanelBook, ids: Ids, locked: boolean): Edit {
   const wanted = new Set(ids);
@@ -337,57 +222,4 @@ export function toRail(document: LayDocument, book: PanelBook, ids: Ids): Edit {
 /** Ids of every placement of a garment. */
 export function placementsOf(document: LayDocument, garment: string): string[] {
   return document.placements.filter((one) => one.garment === garment).map(({ id }) => id);
-}
-
-/**
- * Lays the loose pieces of garment `to` as those of garment `from` lie, all moved along by the same length, past
- * everything on the cloth. `newId` gives the id of each new placement.
- */
-export function copyArrangement(
-  document: LayDocument,
-  book: PanelBook,
-  from: string,
-  to: string,
-  newId: () => string
-): Edit {
-  const labelOf = (id: string): string =>
-    document.garments.find((garment) => garment.id === id)?.label ?? 'the garment';
-  if (from === to) return { refused: 'Choose two different garments.' };
-  const source = document.placements.filter((one) => one.garment === from);
-  if (source.length === 0) return { refused: `No piece of ${labelOf(from)} is on the cloth yet.` };
-  const boxes = (of: readonly LayPlacement[]): Box[] =>
-    of.flatMap((placement) => {
-      const panel = panelOfPlacement(document, book, placement);
-      return panel ? [boxOf(panel, placement)] : [];
-    });
-  const start = Math.min(...boxes(source).map((box) => box.minX));
-  const past = Math.max(0, ...boxes(document.placements).map((box) => box.maxX));
-  const shift = past + document.strip.clearance - start;
-
-  const garment = document.garments.find((each) => each.id === to);
-  const placements = [...document.placements];
-  let laid = 0;
-  for (const placement of source) {
-    const original = panelOfPlacement(document, book, placement);
-    const panel = panelOf(book, garment, placement.panel);
-    if (!panel || !original) continue;
-    const before = balance({ ...document, placements }, book).surplus.length;
-    const copy = {
-      ...placement,
-      id: newId(),
-      garment: to,
-      locked: false,
-      ...snapPlacement({ ...placement, x: placement.x + shift })
-    };
-    // A copy that nothing asks for would be surplus: the piece is on the cloth already, or was never needed.
-    if (balance({ ...document, placements: [...placements, copy] }, book).surplus.length > before) continue;
-    placements.push(copy);
-    laid++;
-  }
-  if (laid === 0)
-    return { refused: `No loose piece of ${labelOf(to)} lies as one of ${labelOf(from)} does.` };
-  return {
-    document: { ...document, placements },
-    said: `${pieces(laid)} of ${labelOf(to)} laid as ${labelOf(from)}.`
-  };
 }

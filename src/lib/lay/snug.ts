@@ -3,7 +3,7 @@ import { snapPlacement } from '$lib/geometry/placement';
 import type { Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
 import { roomTo, sideName, sides, type StripSide } from './borders';
-import type { Edit } from './commands';
+import type { Edit } from './edit';
 import type { LayDocument } from './document';
 import type { PanelBook } from './panel-book';
 import { placedPieces } from './placed';

@@ -3,7 +3,10 @@ import fc from 'fast-check';
 import { boundingBox } from '$lib/geometry/polygon';
 import { placeOutline } from '$lib/geometry/placement';
 import { check } from '$lib/lay/check';
+import { copyArrangement } from '$lib/lay/arrangement';
 import * as commands from '$lib/lay/commands';
+import type { Edit } from '$lib/lay/edit';
+import { exactOf, setExact } from '$lib/lay/exact';
 import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import { loose } from '$lib/lay/needs';
 import { snug, snugWays } from '$lib/lay/snug';
@@ -17,7 +20,7 @@ const book = bookOf(
 );
 const bare = lay(book, []);
 
-function done(edit: commands.Edit): LayDocument {
+function done(edit: Edit): LayDocument {
   expect(edit.refused).toBeUndefined();
   expect(edit.said).not.toBe('');
   return edit.document!;
@@ -69,7 +72,7 @@ describe('moving and locking', () => {
       commands.move(laid, book, ['b'], 1, 0),
       commands.turnBySteps(laid, book, ['b'], 1),
       commands.flip(laid, book, ['b']),
-      commands.setExact(laid, book, 'b', { fromStart: 0 }),
+      setExact(laid, book, 'b', { fromStart: 0 }),
       commands.toRail(laid, book, ['b']),
       snug(laid, book, ['b'], 'near')
     ])
@@ -153,8 +156,8 @@ describe('flipping', () => {
 describe('exact figures', () => {
   it('lay the nearest cut edge at the distances typed', () => {
     const laid = lay(book, [placement('a', 'ell', { x: 333, y: 77, turn: 180 })]);
-    const exact = done(commands.setExact(laid, book, 'a', { fromStart: 12.345, fromSelvedge: 20 }));
-    expect(commands.exactOf(book['style/ell']!, one(exact, 'a'))).toEqual({
+    const exact = done(setExact(laid, book, 'a', { fromStart: 12.345, fromSelvedge: 20 }));
+    expect(exactOf(book['style/ell']!, one(exact, 'a'))).toEqual({
       fromStart: 12.345,
       fromSelvedge: 20,
       turn: 180
@@ -163,8 +166,8 @@ describe('exact figures', () => {
 
   it('take an angle within the tolerance and refuse one beyond it', () => {
     const laid = lay(book, [placement('t', 'tie', { y: 100 })]);
-    expect(one(done(commands.setExact(laid, book, 't', { turn: -1.25 })), 't').turn).toBe(358.75);
-    expect(commands.setExact(laid, book, 't', { turn: 5 }).refused).toBe(
+    expect(one(done(setExact(laid, book, 't', { turn: -1.25 })), 't').turn).toBe(358.75);
+    expect(setExact(laid, book, 't', { turn: 5 }).refused).toBe(
       'Tie of Ada may lie at 0°, 180°, within 2°; got 5°.'
     );
   });
@@ -186,7 +189,7 @@ describe('the Rail and other garments', () => {
 
   it('lays another garment as the first one lies, past everything', () => {
     let n = 0;
-    const edit = commands.copyArrangement(two, book, 'ada', 'bea', () => `n${++n}`);
+    const edit = copyArrangement(two, book, 'ada', 'bea', () => `n${++n}`);
     const copied = done(edit);
     expect(edit.said).toBe('3 pieces of Bea laid as Ada.');
     const shift = 753;
@@ -196,7 +199,7 @@ describe('the Rail and other garments', () => {
     expect(
       check(copied, book).findings.filter(({ kind }) => kind === 'overlap' || kind === 'surplus')
     ).toEqual([]);
-    expect(commands.copyArrangement(copied, book, 'ada', 'bea', () => 'x').refused).toMatch(/No loose piece/);
+    expect(copyArrangement(copied, book, 'ada', 'bea', () => 'x').refused).toMatch(/No loose piece/);
   });
 });
 
