@@ -102,7 +102,7 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
     sizeY: [] as number[],
     onFold: [] as number[]
   };
-  const grouped = new Map<string, boolean>();
+  const grouped = napsOfStart(problem);
   const coarse = coarseness(problem);
   let area = 0;
   let roots = 0;
@@ -256,6 +256,19 @@ function waysOf(
     if (near) tilted.push({ ...near, turn });
   }
   return tilted;
+}
+
+/** How the groups run whose pieces lie already. */
+function napsOfStart(problem: SettleProblem): Map<string, boolean> {
+  const naps = new Map<string, boolean>();
+  const pieces = new Map(problem.pieces.map((piece) => [piece.id, piece]));
+  for (const { piece: id, turn } of problem.start) {
+    const piece = pieces.get(id);
+    if (!piece || piece.napGroup === null || naps.has(piece.napGroup)) continue;
+    const way = piece.ways.find((one) => turnBetween(one.turn, turn) <= piece.tilt + 1e-3);
+    if (way && way.nap !== 0) naps.set(piece.napGroup, way.nap > 0);
+  }
+  return naps;
 }
 
 /** The least turn from one angle to the other, 0 … 180. */
