@@ -390,6 +390,38 @@ describe('releasing', () => {
   });
 });
 
+describe('a fault in the middle', () => {
+  /** Lets the next insert into `table` fail, as a full disk would. */
+  const breakAt = (table: string) =>
+    cast.db.raw(`create trigger fault before insert on ${table} begin select raise(abort, 'disk full'); end`);
+
+  test.each(['lay_saves', 'lay_items'])('a save that fails at %s saves nothing', async (table) => {
+    const document = good((await lays.read(scope, id)).document);
+    await cast.db('lay_items').where({ lay_id: id }).delete();
+    await breakAt(table);
+    await expect(lays.save(scope, id, { version: 1, saveId: newId(), document })).rejects.toThrow(
+      /disk full/
+    );
+    expect(await lays.read(scope, id)).toMatchObject({ version: 1, document: { placements: [] } });
+    expect(await cast.db('lay_saves')).toEqual([]);
+    await cast.db.raw('drop trigger fault');
+    expect(await lays.save(scope, id, { version: 1, saveId: newId(), document })).toMatchObject({
+      version: 2
+    });
+  });
+
+  test.each(['lay_revisions', 'audit_entries'])(
+    'a release that fails at %s releases nothing',
+    async (table) => {
+      await saveGood();
+      await breakAt(table);
+      await expect(layRelease.release(scope, id, { version: 2, name: 'x' })).rejects.toThrow(/disk full/);
+      expect(await lays.read(scope, id)).toMatchObject({ state: 'open', chosen: false, revision: null });
+      expect(await layRevisions.list(scope, id)).toEqual([]);
+    }
+  );
+});
+
 describe('revisions', () => {
   test('are kept under a name with whatever findings, listed newest first, and restored', async () => {
     const empty = (await lays.read(scope, id)).document;
