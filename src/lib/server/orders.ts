@@ -1,5 +1,5 @@
 import type { Knex } from 'knex';
-import type { ClothRole } from '$lib/pattern/panel';
+import { clothRoles, type ClothRole } from '$lib/pattern/panel';
 import type { Millimetres } from '$lib/units/measure';
 import { database } from './database';
 import { newId } from './ids';
@@ -178,6 +178,9 @@ async function clothsOf(scope: Scope, orderIds: readonly string[]): Promise<Map<
       });
     else if (!known.roles.includes(row.role)) cloths[at] = { ...known, roles: [...known.roles, row.role] };
   }
+  // The main cloth first, as people speak of them.
+  const rank = ({ roles }: OrderCloth) => Math.min(...roles.map((role) => clothRoles.indexOf(role)));
+  for (const cloths of byOrder.values()) cloths.sort((a, b) => rank(a) - rank(b));
   return byOrder;
 }
 
