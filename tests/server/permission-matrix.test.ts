@@ -1,7 +1,7 @@
 import { copyFileSync, mkdtempSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import path from 'node:path';
-import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { openDatabase, useDatabase } from '$lib/server/database';
 import { may, roles, type Permission, type Role } from '$lib/server/permissions';
 import { ending, eventFor, makeCast, signedOut, type Call, type Cast, type House } from './cast';
@@ -69,24 +69,38 @@ beforeAll(async () => {
 afterAll(() => rmSync(folder, { recursive: true }));
 
 let db: ReturnType<typeof openDatabase>;
+let untouched: string;
 let calls = 0;
 beforeEach(() => fresh());
-afterEach(() => db.destroy());
+afterAll(() => db.destroy());
 
+/** How many rows this connection has written, those of undone transactions too. */
+async function written(): Promise<number> {
+  const [row] = await db.raw('SELECT total_changes() AS n');
+  return row.n;
+}
+
+/** Every call finds the database as it was prepared. */
 async function fresh(): Promise<void> {
+  if (db && (await written()) === 0) return;
   await db?.destroy();
   const file = path.join(folder, 'copy.sqlite');
   for (const side of ['', '-wal', '-shm']) rmSync(file + side, { force: true });
   copyFileSync(golden, file);
   db = openDatabase(file);
   useDatabase(db);
+  untouched ??= await everything();
 }
 
-/** Everything that is stored, the record of who did what and the sessions excepted. */
+/** Everything that is stored, the record of who did what excepted. */
 async function everything(): Promise<string> {
   const tables = await db('sqlite_master').where({ type: 'table' }).orderBy('name').pluck('name');
   const kept = tables.filter((name: string) => !/^(sqlite_|knex_|audit_entries$)/.test(name));
   return JSON.stringify(await Promise.all(kept.map((name: string) => db(name).orderBy('rowid'))));
+}
+
+async function expectUntouched(words?: string): Promise<void> {
+  if ((await written()) > 0) expect(await everything(), words).toBe(untouched);
 }
 
 type Outcome = { status: number; location: string; text: string };
@@ -153,12 +167,11 @@ describe('the table', () => {
 
 describe('signed out', () => {
   it.each(guarded)('%s is refused and changes nothing', async (key, entry) => {
-    const before = await everything();
     const { status, location, text } = await outcomeOf(key, signedOut, callOf(entry, here));
     if (isApi(key)) expect(status).toBe(401);
     else expect([status, location.split('?')[0]]).toEqual([303, '/sign-in']);
     expectNoSecrets(text, key);
-    expect(await everything()).toBe(before);
+    await expectUntouched();
   });
 
   it.each(entries.filter(([, { access }]) => access === 'anyone'))('%s is answered', async (key, entry) => {
@@ -171,12 +184,11 @@ describe('signed out', () => {
 
 describe('signed in without a studio', () => {
   it.each(byPermission)('%s is refused and changes nothing', async (key, entry) => {
-    const before = await everything();
     const locals = { ...cast.here.owner.locals, scope: null, studio: null };
     const { status, location } = await outcomeOf(key, locals, callOf(entry, here));
     if (isApi(key)) expect(status).toBe(403);
     else expect([status, location]).toEqual([303, '/studios']);
-    expect(await everything()).toBe(before);
+    await expectUntouched();
   });
 });
 
@@ -186,30 +198,25 @@ describe.each(roles)('as %s', (role) => {
 
   it.each(open)('%s answers about things of the own studio', async (key, entry) => {
     const { status, location, text } = await outcomeOf(key, localsOf(cast.here, role), callOf(entry, here));
-    expect(status, text.slice(0, 300)).not.toBe(401);
-    expect(status, text.slice(0, 300)).not.toBe(403);
-    if (!entry.byCode && key !== '/profile ?/endSession') expect(status, text.slice(0, 300)).not.toBe(404);
-    expect(status, text.slice(0, 300)).toBeLessThan(500);
+    expect(entry.byCode ? [200, 410] : (entry.answers ?? [200, 303]), text.slice(0, 300)).toContain(status);
     expect(location).not.toContain('next=');
     if (refusesPrices(role)) expectNoSecrets(text, key);
   });
 
   if (shut.length > 0)
     it.each(shut)('%s is refused and changes nothing', async (key, entry) => {
-      const before = await everything();
       const { status, text } = await outcomeOf(key, localsOf(cast.here, role), callOf(entry, here));
       expect(status).toBe(403);
       expectNoSecrets(text, key);
-      expect(await everything()).toBe(before);
+      await expectUntouched();
     });
 
   const withIds = open.filter(([key, { byCode }]) => key.includes('[') && !byCode);
   it.each(withIds)("%s: another studio's things are not there", async (key, entry) => {
-    const before = await everything();
     const { status, text } = await outcomeOf(key, localsOf(cast.here, role), foreignPath(entry));
     expect(status, text.slice(0, 300)).toBe(404);
     expectNoSecrets(text, key);
-    expect(await everything()).toBe(before);
+    await expectUntouched();
   });
 
   it.each(withIds)('%s: what does not exist is answered like what is foreign', async (key, entry) => {
@@ -230,16 +237,20 @@ describe.each(roles)('as %s', (role) => {
   it.each(withForeign)('%s: foreign ids in a body are refused and change nothing', async (key, entry) => {
     for (const [name, call] of Object.entries(entry.foreign!(here, elsewhere))) {
       await fresh();
-      const before = await everything();
       const { status, text } = await outcomeOf(key, localsOf(cast.here, role), call);
       expect([400, 404], `${name}: ${text.slice(0, 300)}`).toContain(status);
-      expect(await everything(), name).toBe(before);
+      await expectUntouched(name);
     }
   });
 });
 
-describe('what must not appear', () => {
-  it('would be seen if it did: owners are shown prices', async () => {
+describe('what the matrix looks for', () => {
+  it('is a change of any row', async () => {
+    await db('cloths').where({ id: here.cloth }).update({ colour: '#000000' });
+    await expect(expectUntouched()).rejects.toThrow();
+  });
+
+  it('is a price, which owners are shown', async () => {
     const { text } = await outcomeOf(
       '/cloths/[id] load',
       cast.here.owner.locals,

@@ -1,6 +1,6 @@
 import { newId } from '$lib/server/ids';
 import type { Permission } from '$lib/server/permissions';
-import type { Call } from './cast';
+import { password, type Call } from './cast';
 import type { Props } from './props';
 
 /*
@@ -18,6 +18,8 @@ export interface Entry {
    * at a field, and changes nothing. Foreign ids in paths are tried by the matrix itself.
    */
   readonly foreign?: (own: Props, other: Props) => Readonly<Record<string, Call>>;
+  /** What `call` is answered where it is not 200 or 303: a form that the table does not fill in whole. */
+  readonly answers?: readonly number[];
   /** The path's own ids are secrets of their own kind (one-time links, printed codes): 404 is not asked of them. */
   readonly byCode?: true;
 }
@@ -106,15 +108,17 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/profile ?/rename': { access: 'person', call: () => ({ form: { name: 'Odile' } }) },
   '/profile ?/changeAddress': {
     access: 'person',
-    call: () => ({ form: { email: 'new@far.example', addressPassword: 'x' } })
+    call: () => ({ form: { email: 'new@far.example', addressPassword: password } })
   },
   '/profile ?/changePassword': {
     access: 'person',
-    call: () => ({ form: { password: 'x', newPassword: 'nine copper thimbles sing' } })
+    call: () => ({ form: { password, newPassword: 'nine copper thimbles sing' } })
   },
   '/profile ?/endSession': {
     access: 'person',
-    call: () => ({ form: { publicId: 'none of mine' } }),
+    // The session is the owner's: for the others of the studio there is none.
+    answers: [303, 404],
+    call: (own) => ({ form: { publicId: own.session } }),
     foreign: (_own, other) => ({ session: { form: { publicId: other.session } } })
   },
   '/profile ?/endOthers': { access: 'person' },
@@ -250,6 +254,7 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   },
   '/styles/[id] ?/version': {
     access: 'styles: change',
+    answers: [400],
     call: (own) => params({ id: own.style }, { form: { basedOn: '1' } })
   },
   '/styles/[id] ?/archive': {
@@ -263,6 +268,7 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/styles/imports/[id] load': { access: 'styles: change', call: (own) => params({ id: own.upload }) },
   '/styles/imports/[id] ?/save': {
     access: 'styles: change',
+    answers: [400],
     call: (own) => params({ id: own.upload }, { form: { styleName: 'Sample' } })
   },
   '/styles/imports/[id] ?/leaveOut': {
