@@ -1,7 +1,9 @@
 import type { Millimetres } from '$lib/units/measure';
 import { joinCorner, type Chain, type CornerJoin } from './offset-corner';
 import { outerRing } from './outer-ring';
-import type { Point } from './point';
+import { distanceToOutline } from './outline-distance';
+import { contains } from './polygon';
+import type { Outline, Point } from './point';
 
 /*
  * A line round an outline at a distance that may differ from edge to edge: the cut line round a sew line.
@@ -26,12 +28,31 @@ export interface OffsetEdge {
  * nothing. Bays that the strips close off are filled. Throws a RangeError for edges without length.
  */
 export function offsetOutline(edges: readonly OffsetEdge[]): Point[] | null {
+  const found = joinAndClear(edges);
+  if (!found || edges.some(({ distance }) => distance < 0) || surrounds(found, edges)) return found;
+  // A mirror image or a line run on may cut deep into an edge that bends away sharply: such corners are made plainer.
+  const mitred = edges.map((edge): OffsetEdge =>
+    edge.corner.kind === 'mirrored' ? { ...edge, corner: { kind: 'mitred' } } : edge
+  );
+  const plainer = joinAndClear(mitred);
+  if (plainer && surrounds(plainer, edges)) return plainer;
+  return joinAndClear(edges.map((edge): OffsetEdge => ({ ...edge, corner: { kind: 'blunt' } })));
+}
+
+function joinAndClear(edges: readonly OffsetEdge[]): Point[] | null {
   const chains = edges.map(chainOf);
   const middles = edges.map((edge, i) => {
     const before = chains[(i + chains.length - 1) % chains.length]!;
     return joinCorner(before, chains[i]!, edge.corner);
   });
   return outerRing(chains.flatMap((chain, i) => [...middles[i]!, ...chain.line]));
+}
+
+/** Whether every point of the edges lies in `outline` or, for the rounding to the grid, on it. */
+function surrounds(outline: Outline, edges: readonly OffsetEdge[]): boolean {
+  return edges.every(({ points }) =>
+    points.every((point) => contains(outline, point) || distanceToOutline(outline, point) < 0.003)
+  );
 }
 
 /** The line beside one edge, not yet joined to its neighbours. */

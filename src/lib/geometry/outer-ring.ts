@@ -171,12 +171,18 @@ function borderEdges({ xs, ys, list }: Edges): [number, number][] {
     let winding = 0;
     for (const other of net) {
       if (other === edge) continue;
-      const [px, py, qx, qy] = [xs[other.u]!, ys[other.u]!, xs[other.v]!, ys[other.v]!];
+      const px = xs[other.u]!;
+      const py = ys[other.u]!;
+      const qx = xs[other.v]!;
+      const qy = ys[other.v]!;
       if (level ? px > mx === qx > mx : py > my === qy > my) continue;
+      // Beyond the start of the ray or behind it as a whole: no need to ask for the side.
+      const start = level ? my : mx;
+      const low = level ? Math.min(py, qy) : Math.min(px, qx);
+      if ((level ? Math.max(py, qy) : Math.max(px, qx)) < start) continue;
       const leftwards = level ? qx < px : qy > py;
-      const where = side(px, py, qx, qy, mx, my);
-      if (leftwards && where > 0) winding += other.count;
-      else if (!leftwards && where < 0) winding -= other.count;
+      const ahead = low > start || side(px, py, qx, qy, mx, my) > 0 === leftwards;
+      if (ahead) winding += leftwards ? other.count : -other.count;
     }
     const rayOnLeft = level ? xs[v]! > xs[u]! : ys[v]! < ys[u]!;
     const onLeft = rayOnLeft ? winding : winding + count;
