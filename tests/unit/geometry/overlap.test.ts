@@ -90,6 +90,28 @@ describe('depth of an overlap', () => {
     );
   });
 
+  it('grows with the outlines', () => {
+    fc.assert(
+      fc.property(
+        starOutline(),
+        starOutline(),
+        fc.integer({ min: -100, max: 100 }),
+        fc.constantFrom(0.01, 0.5, 3, 100),
+        (one, two, shift, scale) => {
+          const sized = (outline: typeof one, by: number) =>
+            outline.map(({ x, y }) => ({ x: x * by, y: y * by }));
+          const depth = (by: number) => {
+            const a = prepare(sized(one, by), { x: 0, y: 0 });
+            const b = prepare(sized(two, by), { x: 0, y: 0 });
+            return overlapDepth(a, placePrepared(b, at(shift * by, 0))).depth;
+          };
+          expect(Math.abs(depth(scale) / scale - depth(1))).toBeLessThan(1e-5);
+        }
+      ),
+      { seed: 34, numRuns: 100 }
+    );
+  });
+
   it('agrees with dense sampling of both outlines', () => {
     fc.assert(
       fc.property(

@@ -58,6 +58,29 @@ describe('shown money', () => {
     expect(formatMoney(9007199254740991, 'EUR')).toBe('€90,071,992,547,409.91');
   });
 
+  it('agrees on decimals with the currency table of the language runtime, which follows ISO 4217 (ECMA-402, CurrencyDigits)', () => {
+    const known = [
+      'EUR',
+      'USD',
+      'GBP',
+      'CHF',
+      'JPY',
+      'KRW',
+      'ISK',
+      'CLP',
+      'VND',
+      'XAF',
+      'XOF',
+      'XPF',
+      'KWD',
+      'BHD'
+    ];
+    for (const currency of [...known, 'JOD', 'OMR', 'TND', 'SEK', 'PLN', 'CZK', 'INR', 'BRL', 'PYG', 'RWF']) {
+      const format = new Intl.NumberFormat('en', { style: 'currency', currency });
+      expect(currencyExponent(currency), currency).toBe(format.resolvedOptions().maximumFractionDigits);
+    }
+  });
+
   it('refuses parts of a minor unit and unknown codes', () => {
     expect(() => formatMoney(0.5, 'EUR')).toThrow(RangeError);
     expect(() => currencyExponent('euro')).toThrow(RangeError);
