@@ -10,6 +10,7 @@ import * as studios from '$lib/server/studios';
 import * as invitationPage from '../../src/routes/(door)/invitation/[token]/+page.server';
 import * as newAddress from '../../src/routes/(door)/new-address/[token]/+page.server';
 import * as peoplePage from '../../src/routes/(app)/people/+page.server';
+import * as record from '../../src/routes/(app)/people/record/+page.server';
 import * as profile from '../../src/routes/(app)/profile/+page.server';
 import * as settings from '../../src/routes/(app)/settings/+page.server';
 import * as studiosPage from '../../src/routes/(app)/studios/+page.server';
@@ -351,6 +352,21 @@ describe('the profile', () => {
     ]);
     await post(profile, 'endAll', { locals, cookies });
     expect(await sessions.list(cast.here.cutter.id)).toEqual([]);
+  });
+});
+
+describe('the record', () => {
+  it('tells who did what to whom, of this studio only, the newest first', async () => {
+    const { owner, cutter } = cast.here;
+    await people.changeRole(owner.scope, cutter.id, 'patternMaker');
+    await invited('late@hand.example');
+    await people.disable(cast.elsewhere.owner.scope, cast.elsewhere.cutter.id);
+    const page = await load(record, { locals: owner.locals });
+    const { entries } = (page as { value: { entries: Record<string, unknown>[] } }).value;
+    expect(entries.map(({ personName, action, about }) => [personName, action, about])).toEqual([
+      ['Odile', 'person: invited', 'late@hand.example'],
+      ['Odile', 'person: role changed', 'Cato']
+    ]);
   });
 });
 

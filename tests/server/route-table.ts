@@ -157,6 +157,7 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     call: (own) => ({ form: { userId: own.cutter } }),
     foreign: (_own, other) => ({ person: { form: { userId: other.cutter } } })
   },
+  '/people/record load': { access: 'audit: see' },
   '/settings load': { access: 'studio: manage' },
   '/settings ?/default': {
     access: 'studio: manage',

@@ -47,25 +47,32 @@ export interface ListedEntry {
   readonly id: string;
   readonly at: number;
   readonly action: string;
-  readonly subject: string;
   readonly personName: string | null;
+  /** Whom or what it was about, where it has a name: a member, an invited address. */
+  readonly about: string | null;
 }
 
 /** The latest entries of a studio, the newest first. */
 export async function list(scope: Scope, limit = 100): Promise<ListedEntry[]> {
-  return database()('audit_entries')
+  const rows = await database()('audit_entries')
     .leftJoin('users', 'users.id', 'audit_entries.user_id')
+    .leftJoin({ about: 'users' }, 'about.id', 'audit_entries.subject')
     .where('audit_entries.studio_id', scope.studio)
     .orderBy([
       { column: 'audit_entries.at', order: 'desc' },
       { column: 'audit_entries.id', order: 'desc' }
     ])
     .limit(limit)
-    .select<ListedEntry[]>({
+    .select<(Omit<ListedEntry, 'about'> & { aboutName: string | null; subject: string })[]>({
       id: 'audit_entries.id',
       at: 'audit_entries.at',
       action: 'audit_entries.action',
       subject: 'audit_entries.subject',
-      personName: 'users.name'
+      personName: 'users.name',
+      aboutName: 'about.name'
     });
+  return rows.map(({ aboutName, subject, ...entry }) => ({
+    ...entry,
+    about: aboutName ?? (subject.includes('@') ? subject : null)
+  }));
 }
