@@ -12,7 +12,9 @@ import * as lays from '$lib/server/lays';
 import { readListing } from '$lib/server/listing';
 import * as orders from '$lib/server/orders';
 import type { Scope } from '$lib/server/scope';
-import { makeCast, type Cast } from './cast';
+import * as studios from '$lib/server/studios';
+import { load } from '../../src/routes/+page.server';
+import { ending, eventFor, makeCast, type Cast } from './cast';
 
 let cast: Cast;
 let owner: Scope;
@@ -89,6 +91,25 @@ describe('a filled studio', () => {
     expect(await counts()).toEqual(once);
     expect(await demo.isFilled(cast.elsewhere.owner.scope)).toBe(false);
   });
+});
+
+test('in the demo the first page is its order until the person has saved a lay; elsewhere it is the orders', async () => {
+  await begin();
+  const { studio } = await demo.seed();
+  const owner = (await accounts.findByEmail(content.people[0]!.email))!;
+  const entered = (await studios.enter(studio, owner.id))!;
+  const locals: App.Locals = { ...cast.here.owner.locals, scope: entered.scope, studio: entered.studio };
+  const start = () => ending(() => load(eventFor<Parameters<typeof load>[0]>({ locals })));
+  const first = await demo.firstOrder(entered.scope);
+  expect(await start()).toMatchObject({ kind: 'redirect', location: `/orders/${first}` });
+  const lay = (await everyLay(entered.scope)).rows.find((one) => one.name === 'First lay')!;
+  const { version, document } = await lays.read(entered.scope, lay.id);
+  await lays.save(entered.scope, lay.id, { version, saveId: 'first', document });
+  expect(await start()).toMatchObject({ kind: 'redirect', location: '/orders' });
+  expect(
+    await ending(() => load(eventFor<Parameters<typeof load>[0]>({ locals: cast.here.owner.locals })))
+  ).toMatchObject({ kind: 'redirect', location: '/orders' });
+  await cast.close();
 });
 
 test('clearing leaves nothing of the demo, touches no other studio, and numbers begin again', async () => {
