@@ -12,7 +12,8 @@ import { PdfWriter, type GuideFonts } from './pdf';
 import { drawPiece, handWords, type LabelWords } from './piece-drawing';
 import { drawMap, drawPanelList, type PanelSheets } from './sheet-map';
 import { drawSheet, type SheetWords, type Spot } from './sheet';
-import { drawTicket, identity } from './ticket';
+import { identity } from './identity';
+import { drawTicket } from './ticket';
 import { joinMarks, printed, tapedUpChecks, tileOnPaper, tileWhole, type Tile, type Tiling } from './tiling';
 
 /*

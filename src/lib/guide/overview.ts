@@ -9,7 +9,7 @@ import { placeLabel } from './label-place';
 import type { LaidPiece } from './laid-piece';
 import { onTape } from './measure-words';
 import { handWords } from './piece-drawing';
-import { identity, notice } from './ticket';
+import { identity, notice } from './identity';
 
 /*
  * The lay to scale with a ruler, and the distances by which every piece can be chalked by hand.
@@ -216,7 +216,7 @@ function label(
   const number = String(piece.number);
   const name = `${number} ${piece.panel}`;
   for (const text of [[name, handWords(piece.hand)].filter(Boolean).join(', '), name, number]) {
-    const found = placeLabel(seen, lines, middle, lettering.width(text, size, 'bold') + 1, size);
+    const found = placeLabel(seen, lines, middle, lettering.width(text, size, 'bold') + 2, size * 1.5);
     const fits = size * found.scale;
     if (fits < 2.4 && text !== number) continue;
     // A number that finds no room inside is still read: it may touch the lines.

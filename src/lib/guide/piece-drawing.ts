@@ -69,29 +69,37 @@ function tick(sew: Point, edge: Point): Mark {
   );
 }
 
+/** Holes closer than this to one that says how to mark them don't say it again: the words would run into each other. */
+const WORDED_WITHIN: Millimetres = 90;
+
 /** Drill holes and the words at them, and the words of internal lines. */
 function notes(piece: LaidPiece, label: LabelWords): Mark[][] {
-  const holes = piece.drillHoles.map(({ at, note }) => [
-    ring(at, 2, THIN),
-    line(
-      [
-        { x: at.x - 3.5, y: at.y },
-        { x: at.x + 3.5, y: at.y }
-      ],
-      THIN
-    ),
-    line(
-      [
-        { x: at.x, y: at.y - 3.5 },
-        { x: at.x, y: at.y + 3.5 }
-      ],
-      THIN
-    ),
-    ...(note ? [words({ x: at.x + 4.5, y: at.y + 1 }, note, 3.2)] : []),
-    ...(label.singlePly
-      ? [words({ x: at.x + 4.5, y: at.y - 3.4 }, 'mark with thread or chalk, don’t pierce', 3)]
-      : [])
-  ]);
+  const worded: Point[] = [];
+  const holes = piece.drillHoles.map(({ at, note }) => {
+    const said = worded.some((other) => Math.hypot(other.x - at.x, other.y - at.y) < WORDED_WITHIN);
+    if (!said) worded.push(at);
+    return [
+      ring(at, 2, THIN),
+      line(
+        [
+          { x: at.x - 3.5, y: at.y },
+          { x: at.x + 3.5, y: at.y }
+        ],
+        THIN
+      ),
+      line(
+        [
+          { x: at.x, y: at.y - 3.5 },
+          { x: at.x, y: at.y + 3.5 }
+        ],
+        THIN
+      ),
+      ...(note ? [words({ x: at.x + 4.5, y: at.y + 1 }, note, 3.2)] : []),
+      ...(label.singlePly && !said
+        ? [words({ x: at.x + 4.5, y: at.y - 3.4 }, 'mark with thread or chalk, don’t pierce', 3)]
+        : [])
+    ];
+  });
   const lines = piece.internalLines.map(({ points, note }) => {
     const from = points[Math.floor((points.length - 1) / 2)];
     const to = points[Math.floor((points.length - 1) / 2) + 1];

@@ -17,7 +17,7 @@ import type { GuideInput } from './guide-input';
 import type { LaidPiece, LonePanel } from './laid-piece';
 import { onPaper } from './measure-words';
 import { handWords } from './piece-drawing';
-import { identity, notice } from './ticket';
+import { identity, notice } from './identity';
 import { groups, printed, TAPED_UP_LIMIT, type TapedUpChecks, type Tiling } from './tiling';
 
 /*

@@ -1,24 +1,14 @@
-import { create } from 'qrcode';
 import type { Box } from '$lib/geometry/point';
-import { needHands } from '$lib/lay/document';
 import { formatDecimal } from '$lib/units/length';
 import { napWords, plies, sideUpWords, spreadWords, type ClothFrame } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
-import {
-  line,
-  pen,
-  rectangle,
-  surface,
-  words,
-  wrapText,
-  type Lettering,
-  type Mark,
-  type Page
-} from './drawing';
+import { line, pen, rectangle, surface, words, wrapText, type Lettering, type Page } from './drawing';
 import type { GuideInput } from './guide-input';
+import { identity, notice, shortHash } from './identity';
 import type { LaidPiece } from './laid-piece';
 import { onTape } from './measure-words';
-import { handWords } from './piece-drawing';
+import { listPieces, pieceList } from './piece-list';
+import { qr } from './qr-code';
 
 /*
  * The first page: which order, which cloth, what to mind; and whether the printer prints at true size.
@@ -35,54 +25,6 @@ export interface TicketWords {
   readonly sheets: number;
   /** Code points of letters that the fonts lack. */
   readonly missing: readonly string[];
-}
-
-/** One line of the piece list. */
-export interface PieceCount {
-  readonly garment: string;
-  readonly panel: string;
-  readonly hand: string;
-  readonly count: number;
-}
-
-/** What is cut, garment by garment: as many as the placements give. */
-export function pieceList(pieces: readonly LaidPiece[]): PieceCount[] {
-  const counts = new Map<string, PieceCount>();
-  for (const { garment, panel, hand, copies } of pieces) {
-    const key = JSON.stringify([garment, panel, hand]);
-    counts.set(key, { garment, panel, hand, count: (counts.get(key)?.count ?? 0) + copies });
-  }
-  const order = (one: PieceCount): number => needHands.indexOf(one.hand as (typeof needHands)[number]);
-  return [...counts.values()]
-    .sort(
-      (a, b) =>
-        a.garment.localeCompare(b.garment, 'en') ||
-        a.panel.localeCompare(b.panel, 'en') ||
-        order(a) - order(b)
-    )
-    .map((one) => ({ ...one, hand: handWords(one.hand as LaidPiece['hand']) }));
-}
-
-/** How the hash is read out: the first twelve letters in fours. */
-export function shortHash(hash: string): string {
-  return (hash.slice(0, 12).match(/.{4}/g) ?? [hash]).join(' ');
-}
-
-/** Which lay this is, on every page: the name last, for it may be cut off, and the hash must not. */
-export function identity(input: GuideInput): string {
-  return [
-    `Order ${input.orderNumber}`,
-    `revision ${input.revision.number}`,
-    shortHash(input.revision.hash),
-    input.lay
-  ].join(' · ');
-}
-
-/** What stands at the foot of the desk pages. */
-export function notice(input: GuideInput): string {
-  return input.revision.released === null
-    ? `NOT RELEASED: not to be cut by. ${identity(input)}`
-    : `Released ${input.revision.released}. Scan the code on the ticket before cutting. ${identity(input)}`;
 }
 
 const CAUTIONS = [
@@ -232,60 +174,6 @@ function facts(
   page.top -= 1;
 }
 
-/** A QR code as filled squares, `side` wide, its quiet zone included. */
-export function qr(text: string, x: number, y: number, side: number): Mark[] {
-  const { modules } = create(text, { errorCorrectionLevel: 'M' });
-  const quiet = 4;
-  const module = side / (modules.size + 2 * quiet);
-  const runs: ReturnType<typeof rectangle>[] = [];
-  for (let row = 0; row < modules.size; row++)
-    for (let column = 0; column < modules.size; column++) {
-      if (!modules.get(row, column)) continue;
-      let end = column;
-      while (end + 1 < modules.size && modules.get(row, end + 1)) end++;
-      const top = y + side - (quiet + row) * module;
-      runs.push(
-        rectangle({
-          minX: x + (quiet + column) * module,
-          maxX: x + (quiet + end + 1) * module,
-          minY: top - module,
-          maxY: top
-        })
-      );
-      column = end;
-    }
-  return [surface(runs, 0)];
-}
-
-/** The piece list in two columns down to `bottom`; gives the lines that found no room. */
-function listPieces(page: DeskPage, list: readonly PieceCount[], bottom: number): readonly PieceCount[] {
-  const row = 5.3;
-  const gap = 6;
-  const width = (page.width - gap) / 2;
-  const perColumn = Math.max(0, Math.floor((page.top - bottom - 1) / row));
-  const fits = list.length <= perColumn * 2;
-  // The last place says where the others are.
-  const shown = fits ? list : list.slice(0, Math.max(0, perColumn * 2 - 1));
-  const tall = fits ? Math.ceil(list.length / 2) : perColumn;
-  const place = (i: number) => ({
-    x: page.left + (i < tall ? 0 : width + gap),
-    y: page.top - ((i % Math.max(tall, 1)) + 1) * row + 1.2
-  });
-  shown.forEach((one, i) => {
-    const { x, y } = place(i);
-    page.put(String(one.count), x + 7, y, 4.4, { weight: 'bold', align: 'end' });
-    const name = [one.panel, one.hand].filter(Boolean).join(', ');
-    const wide = Math.min(page.lettering.width(name, 4, 'bold'), width - 10);
-    page.put(name, x + 10, y, 4, { weight: 'bold', room: width - 10 });
-    if (width - 10 - wide > 12) page.put(one.garment, x + 12 + wide, y, 3.2, { room: width - 12 - wide });
-  });
-  if (!fits && perColumn > 0) {
-    const { x, y } = place(shown.length);
-    page.put(`${list.length - shown.length} more lines on the next page`, x + 10, y, 3.6);
-  }
-  return list.slice(shown.length);
-}
-
 /** Two squares that share their lower left corner, and inside them what to set in the print dialogue. */
 function checkSquares(page: DeskPage, say: TicketWords): void {
   const x = page.left;
@@ -341,4 +229,6 @@ function cautions(page: DeskPage, input: GuideInput, say: TicketWords, squaresTo
   for (const text of own) put(text, 3.5, 'regular', 1.3);
   if (say.missing.length > 0)
     put(`Letters that our fonts lack, printed as a box: ${say.missing.join(', ')}.`, 3.5, 'bold', 0);
+  const { hash } = input.revision;
+  put(`Hash of this revision: ${hash.slice(0, 32)} ${hash.slice(32)}`, 3, 'regular', 0);
 }

@@ -1,3 +1,4 @@
+import { create } from 'qrcode';
 import { describe, expect, it } from 'vitest';
 import { GuideRefusal, makeGuide } from '$lib/guide/guide';
 import { guideChoiceSchema, type GuideChoice } from '$lib/guide/guide-choice';
@@ -64,8 +65,20 @@ describe('the ticket', () => {
 
   it('carries the code of the scan address as black squares and both check squares', async () => {
     const { pages } = await pagesOf(sampleInput());
-    const filled = pages[0]!.paths.filter(({ painted }) => painted === 'filled');
-    expect(filled.length).toBeGreaterThan(100);
+    const filled = pages[0]!.paths.filter(({ painted }) => painted === 'filled').map(({ points }) => points);
+    const xs = filled.flat().map(({ x }) => x);
+    const ys = filled.flat().map(({ y }) => y);
+    const [left, right, top] = [Math.min(...xs), Math.max(...xs), Math.max(...ys)];
+    // The code as the library gives it, module by module: neither turned nor mirrored.
+    const { modules } = create(sampleInput().scanAddress, { errorCorrectionLevel: 'M' });
+    const module = (right - left) / modules.size;
+    expect(module).toBeGreaterThan(0.5);
+    for (let row = 0; row < modules.size; row++)
+      for (let column = 0; column < modules.size; column++) {
+        const at = { x: left + (column + 0.5) * module, y: top - (row + 0.5) * module };
+        const black = filled.some(([a, , c]) => at.x > a!.x && at.x < c!.x && at.y > a!.y && at.y < c!.y);
+        expect([row, column, black]).toEqual([row, column, Boolean(modules.get(row, column))]);
+      }
     const sides = pages[0]!.paths
       .filter(({ painted, closed, points }) => painted === 'stroked' && closed && points.length === 4)
       .map(({ points }) => [points[1]!.x - points[0]!.x, points[2]!.y - points[1]!.y]);
