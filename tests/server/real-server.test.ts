@@ -1,4 +1,4 @@
-import { mkdtempSync, rmSync } from 'node:fs';
+import { mkdtempSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import path from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
@@ -81,6 +81,39 @@ describe.skipIf(!isBuilt)('the built server', () => {
     await expect.poll(() => server!.log()).toContain('/reset/[token]');
     for (const word of [secret, token, 'wrong but secret words', password])
       expect(server.log()).not.toContain(word);
+  });
+
+  it('copies a database of an earlier form before it brings it up to date', async () => {
+    await cast.db.schema.dropTable('address_changes');
+    await cast.db('knex_migrations').where({ name: '0002_address_changes.ts' }).delete();
+    const copies = path.join(folder, 'copies');
+    server = await startBuild(file, { WARPWISE_BACKUPS: copies });
+    expect(await cast.db.schema.hasTable('address_changes')).toBe(true);
+    const [copy] = readdirSync(copies);
+    const before = openDatabase(path.join(copies, copy!));
+    expect(await before.schema.hasTable('address_changes')).toBe(false);
+    expect(await before('users')).toHaveLength(6);
+    await before.destroy();
+  });
+
+  it('reads an upload in a worker thread of the build, and makes a page of it', async () => {
+    const cookie = await cookieOf(cast.here.patternMaker);
+    server = await startBuild(file);
+    const form = new FormData();
+    form.set('files', new File([readFileSync('static/sample.svg')], 'sample.svg'));
+    const answer = await fetch(`${server.address}/styles/new`, {
+      method: 'POST',
+      redirect: 'manual',
+      headers: { origin: server.address, accept: 'text/html', cookie },
+      body: form
+    });
+    expect(answer.status).toBe(303);
+    const page = await fetch(new URL(answer.headers.get('location')!, server.address), {
+      headers: { cookie }
+    });
+    expect(page.status).toBe(200);
+    expect(await page.text()).toContain('sample.svg');
+    expect(await cast.db('imports')).toMatchObject([{ state: 'read' }]);
   });
 
   it('goes down at SIGTERM although an event stream is open, and ends by itself', async () => {

@@ -1,5 +1,7 @@
+import type { Knex } from 'knex';
+import { backUp } from './backup';
 import { config } from './config';
-import { migrate, openDatabase, useDatabase } from './database';
+import { migrate, openDatabase, pendingMigrations, useDatabase } from './database';
 import * as demo from './demo';
 import { startTidying } from './housekeeping';
 import { registerAllJobs } from './job-kinds';
@@ -16,7 +18,7 @@ export async function startServer(): Promise<void> {
   if (held.warpwiseStarted) return registerAllJobs();
   held.warpwiseStarted = true;
   const db = openDatabase(config.databaseFile);
-  await migrate(db);
+  await bringUpToDate(db);
   useDatabase(db);
   if (config.demo) await demo.seed();
 
@@ -26,6 +28,8 @@ export async function startServer(): Promise<void> {
   const mail = senderOf(config);
   const stopSending = startSending(mail.send);
   const stopTidying = startTidying();
+  if (!process.env.ORIGIN && !import.meta.env.DEV)
+    log.warn({ origin: config.origin }, 'ORIGIN is not set: links in mails may lead nowhere');
   if (config.smtpUrl === null) log.warn('No mail server is configured (WARPWISE_SMTP_URL): mails wait');
 
   // In dev the tool that runs us ends the process.
@@ -43,4 +47,11 @@ export async function startServer(): Promise<void> {
     await db.destroy();
   });
   log.info({ database: config.databaseFile, origin: config.origin }, 'ready');
+}
+
+/** Migrations only go forward: a database that has rows is copied before it is changed. */
+async function bringUpToDate(db: Knex): Promise<void> {
+  if ((await db.schema.hasTable('studios')) && (await pendingMigrations(db)) > 0)
+    log.info({ copy: await backUp(db, config.backupFolder) }, 'copied before the migration');
+  await migrate(db);
 }
