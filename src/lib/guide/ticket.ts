@@ -51,31 +51,31 @@ export function drawTicket(
   const list = pieceList(pieces);
   const squaresTop = page.foot + CHECK_SQUARES[1] + 5;
   const rest = listPieces(page, list, squaresTop);
-  checkSquares(page, say);
+  checkSquares(page, input, say);
   cautions(page, input, say, squaresTop);
+  const letters = missingPages(input, say.missing, desk, lettering);
   const pages = [page.done(notice(input))];
-  if (rest.length === 0) return pages;
-  let full = new DeskPage(desk, 'Pieces', lettering);
-  const started = (): DeskPage => {
-    full = new DeskPage(desk, 'Pieces', lettering);
-    full.title('Pieces, continued', identity(input));
-    return full;
+  if (rest.length === 0) return [...pages, ...letters];
+  const begin = (): DeskPage => {
+    const next = new DeskPage(desk, 'Pieces', lettering);
+    next.title('Pieces, continued', identity(input));
+    return next;
   };
   const last = setTable(
-    started(),
+    begin(),
     [
       { word: 'pieces', width: 18, align: 'end', weight: 'bold' },
       { word: 'panel', width: 78, align: 'start', weight: 'bold' },
       { word: 'hand', width: 26, align: 'start' },
-      { word: 'garment', width: full.width - 122, align: 'start' }
+      { word: 'garment', width: page.width - 122, align: 'start' }
     ],
     rest.map((one) => [String(one.count), one.panel, one.hand, one.garment]),
     (before) => {
       pages.push(before.done(notice(input)));
-      return started();
+      return begin();
     }
   );
-  return [...pages, last.done(notice(input))];
+  return [...pages, last.done(notice(input)), ...letters];
 }
 
 function head(page: DeskPage, input: GuideInput): void {
@@ -175,7 +175,7 @@ function facts(
 }
 
 /** Two squares that share their lower left corner, and inside them what to set in the print dialogue. */
-function checkSquares(page: DeskPage, say: TicketWords): void {
+function checkSquares(page: DeskPage, input: GuideInput, say: TicketWords): void {
   const x = page.left;
   const y = page.foot;
   const [small, large] = CHECK_SQUARES;
@@ -206,6 +206,11 @@ function checkSquares(page: DeskPage, say: TicketWords): void {
     4.2,
     'regular'
   );
+  const { hash } = input.revision;
+  const half = hash.length / 2;
+  page.put('This revision’s hash', x + 8, y + 13, 3);
+  page.put(hash.slice(0, half), x + 8, y + 9, 3);
+  page.put(hash.slice(half), x + 8, y + 5, 3);
 }
 
 function cautions(page: DeskPage, input: GuideInput, say: TicketWords, squaresTop: number): void {
@@ -227,8 +232,47 @@ function cautions(page: DeskPage, input: GuideInput, say: TicketWords, squaresTo
     ...CAUTIONS
   ];
   for (const text of own) put(text, 3.5, 'regular', 1.3);
-  if (say.missing.length > 0)
-    put(`Letters that our fonts lack, printed as a box: ${say.missing.join(', ')}.`, 3.5, 'bold', 0);
-  const { hash } = input.revision;
-  put(`Hash of this revision: ${hash.slice(0, 32)} ${hash.slice(32)}`, 3, 'regular', 0);
+  if (say.missing.length > 0) put(missingWords(say.missing), 3.5, 'bold', 0);
+}
+
+/** As many missing letters as the ticket has room for; the others are listed on a page of their own. */
+const MISSING_HERE = 9;
+
+function missingWords(missing: readonly string[]): string {
+  const here = missing.length <= MISSING_HERE ? missing : missing.slice(0, MISSING_HERE - 1);
+  const more = missing.length - here.length;
+  return `Letters that our fonts lack, printed as a box: ${here.join(', ')}${
+    more > 0 ? `, and ${more} more on a page that follows` : ''
+  }.`;
+}
+
+/** Every missing letter, where the ticket itself has no room for all. */
+function missingPages(
+  input: GuideInput,
+  missing: readonly string[],
+  desk: Desk,
+  lettering: Lettering
+): Page[] {
+  if (missing.length <= MISSING_HERE) return [];
+  const pages: Page[] = [];
+  const begin = (): DeskPage => {
+    const page = new DeskPage(desk, 'Letters', lettering);
+    page.title('Letters printed as a box', identity(input));
+    return page;
+  };
+  const across = 7;
+  const rows = Array.from({ length: Math.ceil(missing.length / across) }, (_, i) =>
+    missing.slice(i * across, (i + 1) * across)
+  );
+  const first = begin();
+  const columns = Array.from({ length: across }, () => ({
+    word: '',
+    width: first.width / across,
+    align: 'start' as const
+  }));
+  const last = setTable(first, columns, rows, (full) => {
+    pages.push(full.done(notice(input)));
+    return begin();
+  });
+  return [...pages, last.done(notice(input))];
 }

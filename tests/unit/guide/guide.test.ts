@@ -105,6 +105,14 @@ describe('letters', () => {
     expect(box).toBeDefined();
   });
 
+  it('are named every one, on a page of their own where the ticket has no room', async () => {
+    const letters = Array.from({ length: 400 }, (_, i) => String.fromCodePoint(0x4e00 + i)).join('');
+    const { pages, missing } = await pagesOf(sampleInput(sampleDocument(), { cloth: letters }));
+    expect(missing.length).toBeGreaterThan(399);
+    const ticket = pages.map(textOf).join(' ');
+    for (const codePoint of missing) expect(ticket).toContain(codePoint);
+  });
+
   it('that are written apart from their accent print as one', async () => {
     const apart = sampleInput(sampleDocument(), { cloth: 'cre\u0302pe' });
     const { pages, missing } = await pagesOf(apart);
