@@ -16,7 +16,7 @@ export interface HeldOverlap {
 }
 
 /** Most overlaps that are hatched in one frame; the deepest first. */
-const MOST_HATCHED = 12;
+const MOST_HATCHED = 6;
 
 export class Handful {
   readonly ids: readonly string[];
@@ -46,10 +46,12 @@ export class Handful {
 
   /** Overlaps of the held pieces, deepest first. */
   overlaps(step: Point): HeldOverlap[] {
-    const pairs = new Map<string, HeldOverlap>();
+    const own = new Set(this.ids);
+    const found: HeldOverlap[] = [];
     for (const piece of this.report(step).pieces)
       for (const { with: other, depth, at } of piece.overlaps)
-        pairs.set([piece.id, other].sort().join(), { at, depth, piece: piece.id, other });
-    return [...pairs.values()].sort((a, b) => b.depth - a.depth).slice(0, MOST_HATCHED);
+        // Two held pieces name each other: once is enough.
+        if (!own.has(other) || piece.id < other) found.push({ at, depth, piece: piece.id, other });
+    return found.sort((a, b) => b.depth - a.depth).slice(0, MOST_HATCHED);
   }
 }

@@ -76,12 +76,12 @@ function panelNamed(book: PanelBook, panel: string): LayPanel | undefined {
 
 /** What the cloth to buy costs; null without a price (a cutter's page has none). */
 export function costWords(
-  readings: Readings,
+  toBuy: number,
   price: { minor: number; unit: 'metre' | 'yard'; currency: string } | null
 ): { per: string; total: string } | null {
   if (!price) return null;
   return {
     per: `${formatMoney(price.minor, price.currency)} a ${price.unit}`,
-    total: formatMoney(clothCost(readings.clothToBuy.total, price.minor, price.unit), price.currency)
+    total: formatMoney(clothCost(toBuy, price.minor, price.unit), price.currency)
   };
 }
