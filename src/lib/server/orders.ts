@@ -1,9 +1,8 @@
 import type { Knex } from 'knex';
-import { clothRoles, type ClothRole } from '$lib/pattern/panel';
-import type { Millimetres } from '$lib/units/measure';
 import { database } from './database';
 import { newId } from './ids';
 import { containing, pageOf, type Listing, type Page } from './listing';
+import * as orderCloths from './order-cloths';
 import * as items from './order-items';
 import { notFound, Problem } from './problem';
 import type { Scope } from './scope';
@@ -51,18 +50,6 @@ export interface ListedOrder {
   readonly clothsToLay: number;
 }
 
-/** A cloth that the lines of an order take. */
-export interface OrderCloth {
-  readonly id: string;
-  readonly name: string;
-  readonly colour: string;
-  readonly usableWidth: Millimetres;
-  /** As what: main, lining … */
-  readonly roles: readonly ClothRole[];
-  /** Whether a lay of it for this order is released (or cut already). */
-  readonly released: boolean;
-}
-
 export interface Order extends OrderInput {
   readonly id: string;
   readonly number: number;
@@ -70,7 +57,7 @@ export interface Order extends OrderInput {
   readonly createdAt: number;
   readonly updatedAt: number;
   readonly items: readonly items.OrderItem[];
-  readonly cloths: readonly OrderCloth[];
+  readonly cloths: readonly orderCloths.OrderCloth[];
 }
 
 interface OrderRow {
@@ -116,7 +103,7 @@ export async function list(
     .whereIn('order_id', ids)
     .groupBy('order_id')
     .select<{ order_id: string; n: number }[]>('order_id', database().raw('sum(quantity) as n'));
-  const cloths = await clothsOf(scope, ids);
+  const cloths = await orderCloths.byOrder(scope, ids);
   return {
     ...page,
     rows: page.rows.map((row) => ({
@@ -138,52 +125,6 @@ export async function any(scope: Scope): Promise<boolean> {
   return (await database()('orders').where({ studio_id: scope.studio }).first('id')) !== undefined;
 }
 
-/** The cloths that orders take, by order. */
-async function clothsOf(scope: Scope, orderIds: readonly string[]): Promise<Map<string, OrderCloth[]>> {
-  const rows = await database()('order_item_cloths')
-    .join('order_items', 'order_items.id', 'order_item_cloths.order_item_id')
-    .join('cloths', 'cloths.id', 'order_item_cloths.cloth_id')
-    .where({ 'order_item_cloths.studio_id': scope.studio })
-    .whereIn('order_items.order_id', orderIds)
-    .orderBy(['order_items.position', 'order_item_cloths.role'])
-    .select<
-      { orderId: string; role: ClothRole; id: string; name: string; colour: string; usableWidth: number }[]
-    >({
-      orderId: 'order_items.order_id',
-      role: 'order_item_cloths.role',
-      id: 'cloths.id',
-      name: 'cloths.name',
-      colour: 'cloths.colour',
-      usableWidth: 'cloths.usable_width'
-    });
-  const released = await database()('lays')
-    .where({ studio_id: scope.studio })
-    .whereIn('order_id', orderIds)
-    .whereIn('state', ['released', 'cut'])
-    .distinct<{ order_id: string; cloth_id: string }[]>('order_id', 'cloth_id');
-  const byOrder = new Map<string, OrderCloth[]>();
-  for (const row of rows) {
-    const cloths = byOrder.get(row.orderId) ?? [];
-    byOrder.set(row.orderId, cloths);
-    const at = cloths.findIndex((cloth) => cloth.id === row.id);
-    const known = cloths[at];
-    if (!known)
-      cloths.push({
-        id: row.id,
-        name: row.name,
-        colour: row.colour,
-        usableWidth: row.usableWidth,
-        roles: [row.role],
-        released: released.some((lay) => lay.order_id === row.orderId && lay.cloth_id === row.id)
-      });
-    else if (!known.roles.includes(row.role)) cloths[at] = { ...known, roles: [...known.roles, row.role] };
-  }
-  // The main cloth first, as people speak of them.
-  const rank = ({ roles }: OrderCloth) => Math.min(...roles.map((role) => clothRoles.indexOf(role)));
-  for (const cloths of byOrder.values()) cloths.sort((a, b) => rank(a) - rank(b));
-  return byOrder;
-}
-
 /** The order with its lines and cloths. Throws 404 for what is not this studio's. */
 export async function read(scope: Scope, id: string): Promise<Order> {
   const row = await database()('orders').where({ studio_id: scope.studio, id }).first<OrderRow | undefined>();
@@ -199,7 +140,7 @@ export async function read(scope: Scope, id: string): Promise<Order> {
     createdAt: row.created_at,
     updatedAt: row.updated_at,
     items: await items.list(scope, id),
-    cloths: (await clothsOf(scope, [id])).get(id) ?? []
+    cloths: (await orderCloths.byOrder(scope, [id])).get(id) ?? []
   };
 }
 
