@@ -200,9 +200,9 @@ function checkSquares(page: DeskPage, input: GuideInput, say: TicketWords): void
   put('No “fit to page”, no shrinking, no borderless enlargement.', 4.2, 'regular');
   put(`First pages: ${say.deskPaper}. Sheets: ${say.paper}. One side only.`, 4.2, 'regular');
   top -= 2;
-  put('Then measure both squares, both ways', 5, 'bold');
+  put('Then measure both squares', 5, 'bold');
   put(
-    'Out by half a millimetre here is 5 mm on a metre: do not cut by it. Set the printer right and print again.',
+    'Across and up. Out by half a millimetre here is 5 mm on a metre: do not cut by it. Set the printer right and print again.',
     4.2,
     'regular'
   );
