@@ -1,16 +1,17 @@
 import type { Point } from '$lib/geometry/point';
-import type { Path, Segment } from '$lib/pattern/panel';
+import type { Path } from '$lib/pattern/panel';
 import { findArrows } from './arrows';
+import { clean, closePath, pathMiddle, points } from './clean-path';
 import { selfContact } from './crossings';
 import { shortText, type Drawing, type DrawnText, type Stroke } from './drawing';
 import { ENDS_MEET, joinStrokes } from './join';
 import { LIMITS, ReadingRefused } from './limits';
+import { nest, ring, sameShape, smallestAround, smallestNear, type Shape } from './nesting';
 import { cuttingWords, SAYS_NOTHING } from './names';
 import {
   boxOf,
   distance,
   endOf,
-  flatten,
   isInside,
   nearestOnPolyline,
   pathBox,
@@ -34,119 +35,11 @@ const LONGEST_CLOTH = 50_000;
 const NEARLY_CLOSED = 5;
 /** An outline thinner than this on average holds no cloth. */
 const THINNEST = 0.02;
-/** Two outlines that differ by less than this are the same one drawn twice. */
-const SAME_WITHIN = 0.1;
-
-const round = (value: number): number => Math.round(value * 1e6) / 1e6 + 0;
-const roundPoint = ({ x, y }: Point): Point => ({ x: round(x), y: round(y) });
-
-/** A path without stretches of no length, on a grid far finer than any cloth; null when nothing is left. */
-function clean(path: Path): Path | null {
-  const from = roundPoint(path.from);
-  const segments: Segment[] = [];
-  let last = from;
-  for (const segment of path.segments) {
-    const to = roundPoint(segment.to);
-    const still =
-      distance(last, to) < 1e-5 &&
-      (segment.kind === 'line' || (distance(last, segment.c1) < 1e-5 && distance(last, segment.c2) < 1e-5));
-    if (still) continue;
-    segments.push(
-      segment.kind === 'line'
-        ? { kind: 'line', to }
-        : { kind: 'cubic', c1: roundPoint(segment.c1), c2: roundPoint(segment.c2), to }
-    );
-    last = to;
-  }
-  return segments.length === 0 ? null : { from, segments };
-}
-
-function points(path: Path): Point[] {
-  return [
-    path.from,
-    ...path.segments.flatMap((segment) =>
-      segment.kind === 'line' ? [segment.to] : [segment.c1, segment.c2, segment.to]
-    )
-  ];
-}
-
-/** A path that ends exactly where it starts: a last stretch is pulled in or a straight one added. */
-function closePath(path: Path): Path {
-  const end = endOf(path);
-  const gap = distance(end, path.from);
-  const segments = [...path.segments];
-  if (gap === 0) return path;
-  if (gap <= ENDS_MEET && segments.length > 1) {
-    segments[segments.length - 1] = { ...segments[segments.length - 1]!, to: path.from };
-  } else segments.push({ kind: 'line', to: path.from });
-  return { from: path.from, segments };
-}
 
 interface Closed {
   stroke: Stroke;
   path: Path;
   gap: number;
-}
-
-/** The outline, in the order of the list, that is the smallest one around `at`. */
-function smallestAround(at: Point, outlines: readonly Shape[], except?: Shape): Shape | null {
-  let best: Shape | null = null;
-  for (const shape of outlines) {
-    if (shape === except) continue;
-    const { box, area } = shape.outline;
-    if (at.x < box.minX || at.x > box.maxX || at.y < box.minY || at.y > box.maxY) continue;
-    if (best && best.outline.area <= area) continue;
-    if (isInside(at, shape.polygon)) best = shape;
-  }
-  return best;
-}
-
-interface Shape {
-  outline: ReadOutline;
-  polygon: Point[];
-}
-
-/**
- * Sets `inside` of every outline: the smallest other outline that holds all of it (points on the border count as
- * held). Outlines that overlap only in part stay side by side.
- */
-export function nest(outlines: readonly ReadOutline[]): ReadOutline[] {
-  const shapes = outlines.map((outline): Shape => ({ outline, polygon: ring(outline.path) }));
-  const bySize = [...shapes].sort((a, b) => a.outline.area - b.outline.area);
-  return shapes.map((shape) => {
-    const { box, area } = shape.outline;
-    const around = bySize.find(
-      (other) =>
-        other !== shape &&
-        other.outline.area > area &&
-        other.outline.box.minX <= box.minX + 1e-3 &&
-        other.outline.box.minY <= box.minY + 1e-3 &&
-        other.outline.box.maxX >= box.maxX - 1e-3 &&
-        other.outline.box.maxY >= box.maxY - 1e-3 &&
-        holds(other.polygon, shape.polygon)
-    );
-    return { ...shape.outline, inside: around?.outline.id ?? null };
-  });
-}
-
-/** Whether a polygon lies within another: every corner and middle of a side inside it or on its border. */
-function holds(outer: readonly Point[], inner: readonly Point[]): boolean {
-  const closed = [...outer, outer[0]!];
-  // A big inner polygon is looked at in at most 400 places; import only offers, the person decides.
-  const step = Math.max(1, Math.floor(inner.length / 200));
-  for (let i = 0; i < inner.length; i += step) {
-    const a = inner[i]!;
-    const b = inner[(i + 1) % inner.length]!;
-    for (const p of [a, { x: (a.x + b.x) / 2, y: (a.y + b.y) / 2 }])
-      if (!isInside(p, outer) && nearestOnPolyline(p, closed).distance > 0.01) return false;
-  }
-  return true;
-}
-
-function ring(path: Path): Point[] {
-  const polygon = flatten(path);
-  polygon.pop();
-  return polygon;
 }
 
 /** What a drawing comes to: outlines closed, joined, nested and judged, marks and texts given to them. */
@@ -592,43 +485,4 @@ class Assembly {
 
 function bare({ id, name, path, layer, group, meaning, outline }: ReadLine): ReadLine {
   return { id, name, path, layer, group, meaning, outline };
-}
-
-function pathMiddle(path: Path): Point {
-  const flat = flatten(path, 1);
-  const i = Math.floor((flat.length - 1) / 2);
-  const [a, b] = [flat[i]!, flat[i + 1] ?? flat[i]!];
-  return { x: (a.x + b.x) / 2, y: (a.y + b.y) / 2 };
-}
-
-/** The outline whose border passes within 1 mm: notches and fold lines stand on it. */
-function smallestNear(at: Point, shapes: readonly Shape[]): Shape | null {
-  let best: { shape: Shape; away: number } | null = null;
-  for (const shape of shapes) {
-    const { box, offered } = shape.outline;
-    if (!offered || at.x < box.minX - 1 || at.x > box.maxX + 1 || at.y < box.minY - 1 || at.y > box.maxY + 1)
-      continue;
-    const away = nearestOnPolyline(at, [...shape.polygon, shape.polygon[0]!]).distance;
-    if (away <= 1 && (!best || away < best.away)) best = { shape, away };
-  }
-  return best?.shape ?? null;
-}
-
-function sameShape(a: Shape, b: Shape): boolean {
-  const [p, q] = [a.outline.box, b.outline.box];
-  if (
-    Math.abs(p.minX - q.minX) > SAME_WITHIN ||
-    Math.abs(p.minY - q.minY) > SAME_WITHIN ||
-    Math.abs(p.maxX - q.maxX) > SAME_WITHIN ||
-    Math.abs(p.maxY - q.maxY) > SAME_WITHIN
-  )
-    return false;
-  const near = (of: Shape, on: Shape): boolean => {
-    const line = [...on.polygon, on.polygon[0]!];
-    const step = Math.max(1, Math.floor(of.polygon.length / 100));
-    for (let i = 0; i < of.polygon.length; i += step)
-      if (nearestOnPolyline(of.polygon[i]!, line).distance > SAME_WITHIN) return false;
-    return true;
-  };
-  return near(a, b) && near(b, a);
 }

@@ -1,4 +1,4 @@
-import { nest } from './assemble';
+import { nest } from './nesting';
 import type { Reading } from './reading';
 
 /** A reading without one of its outlines; those directly inside it are offered in its place. */
