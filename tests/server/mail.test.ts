@@ -1,5 +1,5 @@
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
-import { startFakeMail, type FakeMail } from '../../demo/fake-mail';
+import { startFakeMail, type FakeMail } from '../fakes/fake-mail';
 import { config, readConfig } from '$lib/server/config';
 import { composed } from '$lib/server/mail-words';
 import { senderOf } from '$lib/server/mail';

@@ -2,7 +2,7 @@ import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import { createServer } from 'node:net';
 import { setTimeout as wait } from 'node:timers/promises';
-import { people, studioName } from '../src/lib/server/demo/content.ts';
+import { people, studioName } from '../../src/lib/server/demo/content.ts';
 import { startFakeMail } from './fake-mail.ts';
 
 /*
