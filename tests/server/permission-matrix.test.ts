@@ -69,7 +69,7 @@ beforeAll(async () => {
 afterAll(() => rmSync(folder, { recursive: true }));
 
 let db: ReturnType<typeof openDatabase>;
-let untouched: string;
+let untouched: string | undefined;
 let calls = 0;
 beforeEach(() => fresh());
 afterAll(() => db.destroy());
@@ -82,8 +82,10 @@ async function written(): Promise<number> {
 
 /** Every call finds the database as it was prepared. */
 async function fresh(): Promise<void> {
-  if (db && (await written()) === 0) return;
-  await db?.destroy();
+  if (untouched !== undefined) {
+    if ((await written()) === 0) return;
+    await db.destroy();
+  }
   const file = path.join(folder, 'copy.sqlite');
   for (const side of ['', '-wal', '-shm']) rmSync(file + side, { force: true });
   copyFileSync(golden, file);
