@@ -143,6 +143,24 @@ describe('a job', () => {
     });
   });
 
+  it('writes its progress seldom however often it tells it, and the newest in the end', async () => {
+    jobs.registerJob('test: talkative', {
+      input: any,
+      permission: 'lays: see',
+      run: async (_input, { progress }) => {
+        for (let i = 1; i <= 500; i += 1) progress({ step: i });
+      }
+    });
+    const id = await jobs.enqueue(cast.here.owner.scope, 'test: talkative', null);
+    let changes = 0;
+    const unwatch = jobs.watch(id, () => (changes += 1));
+    await runner.drain();
+    unwatch();
+    expect((await jobs.read(cast.here.owner.scope, id)).progress).toEqual({ step: 500 });
+    // The first, the last, the end.
+    expect(changes).toBeLessThanOrEqual(3);
+  });
+
   it('that still waits is stopped without being run', async () => {
     const run = vi.fn(async () => 1);
     jobs.registerJob('test: waits', { input: any, permission: 'lays: see', run });
