@@ -12,6 +12,7 @@ import { readSvg } from '$lib/interchange/svg';
 import { readPanelFile } from '$lib/interchange/read-file';
 import { readFileSync } from 'node:fs';
 import { dxf, svg } from '../fixtures/hostile/cases';
+import { runs } from '../runs';
 
 /*
  * Reading of SVG and DXF against published formulas and independent parsers.
@@ -74,7 +75,7 @@ describe('SVG path arcs', () => {
           expect(nearestOnPolyline({ x, y }, line).distance).toBeLessThan(0.002);
         }
       }),
-      { seed: 62, numRuns: 300 }
+      { seed: 62, numRuns: runs(300) }
     );
   });
 
@@ -142,7 +143,7 @@ describe('SVG path data against svgpath', () => {
         expect(ours.length).toBe(theirs.length);
         ours.forEach((end, i) => end.forEach((value, k) => expect(value).toBeCloseTo(theirs[i]![k]!, 6)));
       }),
-      { seed: 63, numRuns: 300 }
+      { seed: 63, numRuns: runs(300) }
     );
   });
 });
@@ -270,7 +271,7 @@ describe('DXF against dxf-parser', () => {
           });
         }
       ),
-      { seed: 64, numRuns: 60 }
+      { seed: 64, numRuns: runs(60) }
     );
   });
 
@@ -565,7 +566,7 @@ describe('B-splines', () => {
           );
         }
       }),
-      { seed: 65, numRuns: 150 }
+      { seed: 65, numRuns: runs(150) }
     );
   });
 });

@@ -5,6 +5,7 @@ import { clearBy, outlineDistance } from '$lib/geometry/distance';
 import { overlapDepth } from '$lib/geometry/overlap';
 import { movePrepared, placePrepared, prepare } from '$lib/geometry/prepared';
 import { box, points, randomFrom, star, starOutline } from './outlines';
+import { runs } from '../../runs';
 
 const right = { x: 1, y: 0 };
 const left = { x: -1, y: 0 };
@@ -129,7 +130,7 @@ describe('pushing a piece', () => {
           expect(met).toBe(true);
         }
       ),
-      { seed: 51, numRuns: 300 }
+      { seed: 51, numRuns: runs(300) }
     );
     expect(contacts).toBeGreaterThan(200);
   });
@@ -163,7 +164,7 @@ describe('pushing a piece', () => {
           expect(Math.hypot(move.x, move.y)).toBeGreaterThan(50);
         }
       }),
-      { seed: 53, numRuns: 100 }
+      { seed: 53, numRuns: runs(100) }
     );
   });
 
@@ -181,7 +182,7 @@ describe('pushing a piece', () => {
           if (way < 2000) expect(again).toBeLessThanOrEqual(0.001);
         }
       }),
-      { seed: 54, numRuns: 100 }
+      { seed: 54, numRuns: runs(100) }
     );
   });
 });

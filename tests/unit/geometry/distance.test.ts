@@ -8,6 +8,7 @@ import { boundingBox, locate } from '$lib/geometry/polygon';
 import { holds, outlineOf, placePrepared, prepare } from '$lib/geometry/prepared';
 import { denseDistance } from './brute-force';
 import { box, points, randomFrom, starOutline } from './outlines';
+import { runs } from '../../runs';
 
 const at = (x: number, y: number, turn = 0, flip = false) => ({ x, y, turn, flip });
 const square = prepare(box(0, 0, 100, 100));
@@ -69,7 +70,7 @@ describe('distance of two outlines', () => {
         // Of two places one is a corner, hence a sample; it can only miss where corners are no samples.
         expect(distance).toBeGreaterThanOrEqual(sampled - 1e-6);
       }),
-      { seed: 42, numRuns: 60 }
+      { seed: 42, numRuns: runs(60) }
     );
   });
 
@@ -91,7 +92,7 @@ describe('distance of two outlines', () => {
           expect(clearBy(b, a, clearance)).toBe(expected);
         }
       ),
-      { seed: 43, numRuns: 500 }
+      { seed: 43, numRuns: runs(500) }
     );
   });
 

@@ -8,6 +8,7 @@ import { area, boundingBox, isSimple, locate } from '$lib/geometry/polygon';
 import type { Point } from '$lib/geometry/point';
 import { box, points, randomFrom, starOutline } from './outlines';
 import { distanceTo } from './brute-force';
+import { runs } from '../../runs';
 
 const mitred: CornerJoin = { kind: 'mitred' };
 
@@ -209,7 +210,7 @@ describe('a line beside an outline', () => {
           });
         }
       ),
-      { seed: 71, numRuns: 400 }
+      { seed: 71, numRuns: runs(400) }
     );
   });
 
@@ -222,7 +223,7 @@ describe('a line beside an outline', () => {
         )!;
         expect(area(flipped)).toBeCloseTo(area(plain), 0);
       }),
-      { seed: 72, numRuns: 60 }
+      { seed: 72, numRuns: runs(60) }
     );
   });
 });

@@ -5,6 +5,7 @@ import { overlapRegion } from '$lib/geometry/overlap-region';
 import { outlineOf, placePrepared, prepare, type PreparedOutline } from '$lib/geometry/prepared';
 import { box, points, randomFrom, star, starOutline } from './outlines';
 import { denseDepth } from './brute-force';
+import { runs } from '../../runs';
 
 const at = (x: number, y: number, turn = 0, flip = false) => ({ x, y, turn, flip });
 const square = prepare(box(0, 0, 100, 100));
@@ -86,7 +87,7 @@ describe('depth of an overlap', () => {
           expect(turned).toBeCloseTo(depth, 6);
         }
       ),
-      { seed: 31, numRuns: 200 }
+      { seed: 31, numRuns: runs(200) }
     );
   });
 
@@ -108,7 +109,7 @@ describe('depth of an overlap', () => {
           expect(Math.abs(depth(scale) / scale - depth(1))).toBeLessThan(1e-5);
         }
       ),
-      { seed: 34, numRuns: 100 }
+      { seed: 34, numRuns: runs(100) }
     );
   });
 
@@ -128,7 +129,7 @@ describe('depth of an overlap', () => {
           expect(depth).toBeLessThanOrEqual(sampled + 0.025 + 1e-7);
         }
       ),
-      { seed: 32, numRuns: 40 }
+      { seed: 32, numRuns: runs(40) }
     );
   });
 
@@ -139,7 +140,7 @@ describe('depth of an overlap', () => {
         const b = placePrepared(prepare(two), at(shift, -shift));
         expect(overlaps(a, b)).toBe(overlapDepth(a, b).depth > 0.01);
       }),
-      { seed: 33, numRuns: 200 }
+      { seed: 33, numRuns: runs(200) }
     );
   });
 });

@@ -15,6 +15,7 @@ import {
 } from '$lib/geometry/path';
 import type { Point } from '$lib/geometry/point';
 import { points } from './outlines';
+import { runs } from '../../runs';
 
 const coordinate = fc.integer({ min: -500, max: 500 });
 const point = fc.record({ x: coordinate, y: coordinate });
@@ -66,7 +67,7 @@ describe('paths', () => {
           from = segment.to;
         }
       }),
-      { seed: 61, numRuns: 60 }
+      { seed: 61, numRuns: runs(60) }
     );
   });
 
@@ -83,7 +84,7 @@ describe('paths', () => {
         expect(pathLength(reversed(path))).toBeCloseTo(length, 6);
         expect(reversed(reversed(path))).toEqual(path);
       }),
-      { seed: 62, numRuns: 60 }
+      { seed: 62, numRuns: runs(60) }
     );
   });
 
@@ -101,7 +102,7 @@ describe('paths', () => {
         expect(endOf(head).y).toBeCloseTo(at.y, 6);
         expect(Math.hypot(tangent.x, tangent.y)).toBeCloseTo(1, 9);
       }),
-      { seed: 63, numRuns: 100 }
+      { seed: 63, numRuns: runs(100) }
     );
   });
 

@@ -14,6 +14,7 @@ import {
 } from '$lib/geometry/polygon';
 import { placeOutline } from '$lib/geometry/placement';
 import { box, points, starOutline } from './outlines';
+import { runs } from '../../runs';
 
 const square = box(0, 0, 10, 10);
 
@@ -78,7 +79,7 @@ describe('one outline', () => {
           expect(locate(placed, placed[0]!)).toBe('edge');
         }
       ),
-      { seed: 21, numRuns: 200 }
+      { seed: 21, numRuns: runs(200) }
     );
   });
 });

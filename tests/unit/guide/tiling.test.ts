@@ -13,6 +13,7 @@ import {
   tileOnPaper,
   tileWhole
 } from '$lib/guide/tiling';
+import { runs } from '../../runs';
 
 const rules = { margin: 10, overlap: 15 };
 const box = (minX: number, minY: number, maxX: number, maxY: number): Box => ({ minX, minY, maxX, maxY });
@@ -54,7 +55,7 @@ describe('tiling', () => {
           }
         }
       ),
-      { seed: 20261201, numRuns: 200 }
+      { seed: 20261201, numRuns: runs(200) }
     );
   });
 

@@ -5,6 +5,7 @@ import { check } from '$lib/lay/check';
 import { MOST_BETWEEN } from '$lib/lay/findings-between';
 import { findingKinds } from '$lib/lay/verdict';
 import { bookOf, ell, lay, panel, placement, rectangle, star, starPanel, strip } from './workroom';
+import { runs } from '../../runs';
 
 const square = bookOf(panel('a', rectangle(100, 100), { turns: 'free', symmetric: true, howMany: 2 }));
 
@@ -40,7 +41,7 @@ describe('the check', () => {
         expect(finding).toMatchObject({ kind: 'overlap', severity: 'stops' });
         expect(finding!.measure!.value).toBeCloseTo(0.011, 6);
       }),
-      { seed: 20, numRuns: 1000 }
+      { seed: 20, numRuns: runs(1000) }
     );
   });
 
@@ -124,7 +125,7 @@ describe('the check', () => {
           expect(told(order.map((i) => placements[i]!))).toEqual(told(placements));
         }
       ),
-      { seed: 21, numRuns: 80 }
+      { seed: 21, numRuns: runs(80) }
     );
   });
 });

@@ -11,6 +11,7 @@ import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import { loose } from '$lib/lay/needs';
 import { snug, snugWays } from '$lib/lay/snug';
 import { bookOf, ell, garment, lay, panel, placement, rectangle, star, starPanel, strip } from './workroom';
+import { runs } from '../../runs';
 
 const book = bookOf(
   panel('ell', ell, { paired: true, howMany: 2, hand: 'left' }),
@@ -287,7 +288,7 @@ describe('snug', () => {
           }
         }
       ),
-      { seed: 15, numRuns: 150 }
+      { seed: 15, numRuns: runs(150) }
     );
     expect(good).toBeGreaterThan(100);
   });

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import fc from 'fast-check';
 import { canRedo, canUndo, endGesture, mapHistory, record, redo, startHistory, undo } from '$lib/lay/history';
 import { bookOf, lay, panel, placement, rectangle } from './workroom';
+import { runs } from '../../runs';
 
 const book = bookOf(panel('front', rectangle(100, 100)));
 const state = (x: number) => lay(book, [placement('a', 'front', { x })]);
@@ -27,7 +28,7 @@ describe('undo and redo', () => {
         }
         expect(canRedo(history)).toBe(false);
       }),
-      { seed: 16, numRuns: 40 }
+      { seed: 16, numRuns: runs(40) }
     );
   });
 

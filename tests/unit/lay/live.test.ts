@@ -6,6 +6,7 @@ import { check } from '$lib/lay/check';
 import type { LayDocument } from '$lib/lay/document';
 import { createLive } from '$lib/lay/live';
 import { bookOf, lay, panel, placement, rectangle, star, starPanel, strip } from './workroom';
+import { runs } from '../../runs';
 
 const rotated = (length: number, k: number): number[] =>
   Array.from({ length }, (_, i) => 40 + ((i * (k + 3)) % 7) * 12);
@@ -78,7 +79,7 @@ describe('the live check', () => {
           }
         }
       ),
-      { seed: 18, numRuns: 120 }
+      { seed: 18, numRuns: runs(120) }
     );
   });
 
@@ -99,7 +100,7 @@ describe('the live check', () => {
         expect(piece!.nearest!.distance).toBe(least);
         expect(piece!.nearest!.tooNear).toBe(least < 3 - 0.01);
       }),
-      { seed: 19, numRuns: 200 }
+      { seed: 19, numRuns: runs(200) }
     );
   });
 

@@ -3,6 +3,7 @@ import fc from 'fast-check';
 import type { LayDocument } from '$lib/lay/document';
 import { mergeLays } from '$lib/lay/merge';
 import { bookOf, lay, panel, placement, rectangle, strip } from './workroom';
+import { runs } from '../../runs';
 
 const book = bookOf(panel('front', rectangle(100, 100), { howMany: 4 }));
 const base = lay(book, [
@@ -106,7 +107,7 @@ describe('merging two changed lays', () => {
         );
         expect(mergeLays(base, mine, base).conflicts).toEqual([]);
       }),
-      { seed: 17, numRuns: 300 }
+      { seed: 17, numRuns: runs(300) }
     );
   });
 });

@@ -12,6 +12,7 @@ import { readingsOf } from '$lib/lay/readings';
 import { againstNap, nearestTurn, withinTolerance } from '$lib/lay/turns';
 import { turnSets } from '$lib/pattern/panel';
 import { bookOf, lay, panel, placement, rectangle, starPanel, stars, strip } from './workroom';
+import { runs } from '../../runs';
 
 describe('readings', () => {
   const book = bookOf(panel('front', rectangle(400, 300), { symmetric: true, howMany: 2 }));
@@ -155,7 +156,7 @@ describe('least length', () => {
         expect(length).toBeLessThanOrEqual(readingsOf(document, book).lengthUsed + 1e-9);
         expect(length).toBeGreaterThan(0);
       }),
-      { seed: 13, numRuns: 300 }
+      { seed: 13, numRuns: runs(300) }
     );
     expect(found).toBeGreaterThan(150);
   });
@@ -185,7 +186,7 @@ describe('least length', () => {
           expect(verdict.readings.leastLength.length).toBeLessThanOrEqual(verdict.readings.lengthUsed + 1e-9);
         }
       ),
-      { seed: 14, numRuns: 60 }
+      { seed: 14, numRuns: runs(60) }
     );
   });
 });

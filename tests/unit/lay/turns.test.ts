@@ -12,6 +12,7 @@ import {
 } from '$lib/lay/turns';
 import { turnSets } from '$lib/pattern/panel';
 import { panel, rectangle, strip } from './workroom';
+import { runs } from '../../runs';
 
 const turned = (turns: (typeof turnSets)[number], grainTolerance = 0) =>
   panel('front', rectangle(100, 50), { turns, grainTolerance });
@@ -109,7 +110,7 @@ describe('turning', () => {
           expect(offGrain(piece, nearestTurn(piece, cloth, turn))).toBe(0);
         }
       ),
-      { seed: 12, numRuns: 400 }
+      { seed: 12, numRuns: runs(400) }
     );
   });
 });

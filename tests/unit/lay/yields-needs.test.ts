@@ -3,6 +3,7 @@ import fc from 'fast-check';
 import { balance, loose, needsOf } from '$lib/lay/needs';
 import { flipFor, handAsLaid, yields } from '$lib/lay/yields';
 import { bookOf, ell, garment, lay, panel, placement, rectangle, strip } from './workroom';
+import { runs } from '../../runs';
 
 const left = panel('ell', ell, { howMany: 2, paired: true, hand: 'left' });
 const whole = panel('yoke', rectangle(200, 100), { symmetric: true });
@@ -145,7 +146,7 @@ describe('what hangs on the Rail', () => {
           expect(hanging.filter((piece) => piece.garment !== of)).toHaveLength(3);
         }
       ),
-      { seed: 11, numRuns: 200 }
+      { seed: 11, numRuns: runs(200) }
     );
   });
 });

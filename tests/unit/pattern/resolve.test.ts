@@ -9,6 +9,7 @@ import { resolvePanel } from '$lib/pattern/resolve';
 import { distanceTo } from '../geometry/brute-force';
 import { box, points, starOutline } from '../geometry/outlines';
 import { straightPanel } from './panels';
+import { runs } from '../../runs';
 
 const size = (outline: Outline) => {
   const { minX, minY, maxX, maxY } = boundingBox(outline);
@@ -217,7 +218,7 @@ describe('a resolved panel', () => {
           expect(locate(shape.cut, shape.label)).toBe('inside');
         }
       ),
-      { seed: 81, numRuns: 200 }
+      { seed: 81, numRuns: runs(200) }
     );
   });
 });

@@ -1,6 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { formatDecimal, formatLength, parseLength } from '$lib/units/length';
+import { runs } from '../../runs';
 
 describe('a typed length', () => {
   it.each([
@@ -97,7 +98,7 @@ describe('a shown length', () => {
           expect(parseLength(formatLength(mm, 'cm', { decimals: 4 }), 'in').mm).toBe(mm);
         }
       ),
-      { seed: 11, numRuns: 500 }
+      { seed: 11, numRuns: runs(500) }
     );
   });
 });
