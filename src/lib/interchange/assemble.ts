@@ -1,24 +1,13 @@
 import type { Point } from '$lib/geometry/point';
-import type { Path } from '$lib/pattern/panel';
 import { findArrows } from './arrows';
-import { clean, closePath, pathMiddle, points } from './clean-path';
+import { clean, pathMiddle, points } from './clean-path';
+import { closeStrokes, type Closed } from './closing';
 import { selfContact } from './crossings';
-import { shortText, type Drawing, type DrawnText, type Stroke } from './drawing';
-import { ENDS_MEET, joinStrokes } from './join';
+import { shortText, type Drawing, type DrawnText, type Find, type Stroke } from './drawing';
 import { LIMITS, ReadingRefused } from './limits';
 import { nest, ring, sameShape, smallestAround, smallestNear, type Shape } from './nesting';
 import { cuttingWords, SAYS_NOTHING } from './names';
-import {
-  boxOf,
-  distance,
-  endOf,
-  isInside,
-  nearestOnPolyline,
-  pathBox,
-  pathLength,
-  reversed,
-  signedArea
-} from './path-measure';
+import { boxOf, endOf, nearestOnPolyline, pathBox, pathLength, reversed, signedArea } from './path-measure';
 import {
   READING_SCHEMA,
   type ImportFinding,
@@ -31,16 +20,8 @@ import {
 /** No cloth is wider than this on its narrow side, or longer on its long one (common practice, no published source). */
 const WIDEST_CLOTH = 3_300;
 const LONGEST_CLOTH = 50_000;
-/** An open line whose ends are nearer than this, and that stands in no outline, was probably meant to be closed. */
-const NEARLY_CLOSED = 5;
 /** An outline thinner than this on average holds no cloth. */
 const THINNEST = 0.02;
-
-interface Closed {
-  stroke: Stroke;
-  path: Path;
-  gap: number;
-}
 
 /** What a drawing comes to: outlines closed, joined, nested and judged, marks and texts given to them. */
 export function assemble(drawing: Drawing): Reading {
@@ -56,20 +37,13 @@ class Assembly {
     this.#findings = drawing.findings;
   }
 
-  #find(
-    kind: string,
-    severity: ImportFinding['severity'],
-    message: string,
-    place: Point | null = null,
-    about: string | null = null,
-    measure: number | null = null
-  ): void {
+  readonly #find: Find = (kind, severity, message, place = null, about = null, measure = null) => {
     if (this.#findings.length < 1000) this.#findings.push({ kind, severity, place, about, measure, message });
-  }
+  };
 
   reading(): Reading {
     const strokes = findArrows(this.#cleanStrokes());
-    const { closed, open } = this.#close(strokes);
+    const { closed, open } = closeStrokes(strokes, this.#find);
     const shapes = this.#outlines(closed);
     const lines = this.#lines(open, shapes);
     const grains = lines
@@ -164,81 +138,6 @@ class Assembly {
         far
       );
     return kept;
-  }
-
-  /** Parts strokes into closed outlines and open lines; joins what meets end to end. */
-  #close(strokes: readonly Stroke[]): { closed: Closed[]; open: Stroke[] } {
-    const closed: Closed[] = [];
-    const loose: Stroke[] = [];
-    const open: Stroke[] = [];
-    for (const stroke of strokes) {
-      const gap = distance(stroke.path.from, endOf(stroke.path));
-      if (stroke.closed || (gap <= ENDS_MEET && stroke.path.segments.length > 1)) {
-        if (!stroke.closed && gap > 0.001) this.#joinedOver(stroke.path.from, gap);
-        closed.push({ stroke, path: closePath(stroke.path), gap: 0 });
-      } else if (['grain', 'mirror', 'notch', 'reference'].includes(stroke.meaning)) open.push(stroke);
-      else loose.push(stroke);
-    }
-    const joined = joinStrokes(loose);
-    for (const { at, gap } of joined.gaps) this.#joinedOver(at, gap);
-    for (const { at, ends } of joined.forks.slice(0, 50))
-      this.#find(
-        'fork',
-        'warns',
-        `${ends} lines end at one place; it is not clear which two belong together.`,
-        at,
-        null,
-        ends
-      );
-    const still: Stroke[] = [];
-    for (const stroke of joined.strokes) {
-      const gap = distance(stroke.path.from, endOf(stroke.path));
-      if (gap <= ENDS_MEET && stroke.path.segments.length > 1) {
-        if (gap > 0.001) this.#joinedOver(stroke.path.from, gap);
-        closed.push({ stroke, path: closePath(stroke.path), gap: 0 });
-      } else still.push(stroke);
-    }
-    const rings = closed.map(({ path }) => ({ ring: ring(path), box: pathBox(path) }));
-    for (const stroke of still) {
-      const gap = distance(stroke.path.from, endOf(stroke.path));
-      const middle = pathMiddle(stroke.path);
-      const stands = rings.some(
-        ({ ring: polygon, box }) =>
-          middle.x >= box.minX &&
-          middle.x <= box.maxX &&
-          middle.y >= box.minY &&
-          middle.y <= box.maxY &&
-          isInside(middle, polygon)
-      );
-      const encloses = stroke.path.segments.length > 1 && Math.abs(signedArea(stroke.path)) > 100;
-      if (encloses && !stands) {
-        const name = stroke.name === '' ? 'An outline' : `'${stroke.name}'`;
-        if (gap <= NEARLY_CLOSED) closed.push({ stroke, path: closePath(stroke.path), gap });
-        else
-          this.#find(
-            'not-closed',
-            'warns',
-            `${name} is not closed: its ends are ${gap.toFixed(1)} mm apart. It was taken as a line.`,
-            stroke.path.from,
-            null,
-            gap
-          );
-        if (gap <= NEARLY_CLOSED) continue;
-      }
-      open.push(stroke);
-    }
-    return { closed, open };
-  }
-
-  #joinedOver(at: Point, gap: number): void {
-    this.#find(
-      'joined',
-      'tells',
-      `Two ends that stood ${gap.toFixed(3)} mm apart were joined.`,
-      at,
-      null,
-      gap
-    );
   }
 
   #outlines(closed: readonly Closed[]): Shape[] {

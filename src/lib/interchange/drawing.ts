@@ -42,6 +42,16 @@ export interface Drawing {
   findings: ImportFinding[];
 }
 
+/** Notes a finding: its kind, how much it weighs, the words, its place, what it is about, its measure. */
+export type Find = (
+  kind: string,
+  severity: ImportFinding['severity'],
+  message: string,
+  place?: Point | null,
+  about?: string | null,
+  measure?: number | null
+) => void;
+
 /** Things that were passed over, counted by name, as findings at the end. */
 export class Tally {
   readonly #counts = new Map<string, { count: number; place: Point | null }>();
