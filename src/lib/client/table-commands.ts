@@ -14,7 +14,7 @@ export interface Desk {
   readonly lay: OpenLay;
   readonly table: TableView;
   /** Panels of the screen that a command opens. */
-  readonly open: (sheet: 'help' | 'copy' | 'release' | 'keep' | 'revisions' | 'pieces') => void;
+  readonly open: (sheet: 'help' | 'copy' | 'cloth' | 'release' | 'keep' | 'revisions' | 'pieces') => void;
 }
 
 export type CommandGroup = 'Pieces' | 'Turning' | 'Snug' | 'Moving' | 'Picking' | 'Looking' | 'Lay';
@@ -344,6 +344,14 @@ export const tableCommands: readonly TableCommand[] = [
       if (!lay.saving.unsaved) lay.say('Everything is saved.');
       else void lay.saveNow();
     }
+  },
+  {
+    id: 'cloth',
+    label: 'Cloth and blade: clearance, ends, side up',
+    group: 'Lay',
+    keys: ['E'],
+    enabled: writable,
+    perform: ({ open }) => open('cloth')
   },
   {
     id: 'keep',

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { firstFreePlace } from '$lib/client/first-free-place';
 import { commandFor, keyName, keyWords, tableCommands } from '$lib/client/table-commands';
+import { setStrip, settingsOf } from '$lib/client/strip-edits';
 import { pieceAt, piecesWithin, tablePieces } from '$lib/client/table-pieces';
 import { check } from '$lib/lay/check';
 import { placeFromRail } from '$lib/lay/commands';
@@ -81,5 +82,21 @@ describe('the piece under the pointer', () => {
       maxY: piece.placement.y + 1
     };
     expect(piecesWithin([piece], inside)).toHaveLength(1);
+  });
+});
+
+describe('the cloth of a lay', () => {
+  it('is set as one edit, and turned over changes every hand', () => {
+    const { document, panels } = madeUpLay(10, 24);
+    const now = settingsOf(document.strip);
+    expect(setStrip(document, now).refused).toBeDefined();
+    const wide = setStrip(document, { ...now, clearance: 30, endAllowance: { start: 40, end: 20 } });
+    expect(wide.document!.strip).toMatchObject({ clearance: 30, endAllowance: { start: 40, end: 20 } });
+    expect(check(wide.document!, panels).readings.clothToBuy.start).toBe(40);
+    expect(check(document, panels).findings).toEqual([]);
+    expect(check(wide.document!, panels).findings.map(({ kind }) => kind)).toContain('clearance');
+    const over = setStrip(document, { ...now, sideUp: 'wrong' });
+    const kinds = check(over.document!, panels).findings.map(({ kind }) => kind);
+    expect(kinds.filter((kind) => kind === 'wrong-hand')).toHaveLength(10);
   });
 });
