@@ -57,6 +57,12 @@ describe('hostile drawings in the worker', () => {
     });
   });
 
+  it('are stopped when they need too much memory', async () => {
+    const curves = 'c9000 -9000 9000 9000 0 50'.repeat(50);
+    const wide = svg(Array.from({ length: 1900 }, (_, i) => `<path d="M${i} ${i}${curves}z"/>`).join(''));
+    expect(await readDrawing(bytesOf(wide))).toMatchObject({ refused: { kind: 'too-much-memory' } });
+  });
+
   it('are stopped when they take too long', async () => {
     const slow = svg(
       Array.from(
