@@ -28,6 +28,8 @@ const NEAR = 64;
 /** An overlap of less than so many quanta is none: the no-fit borders themselves are rounded to one. */
 const TOUCH = 0.05;
 const STEPS = 8;
+/** Stands for the table of a neighbour that has none yet. */
+const ROUGH = -1;
 
 /** How many places a move looks at, in the choice that the piece has and in another one. */
 export interface Effort {
@@ -163,7 +165,18 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
   /** The part of the cloth for which the list is complete: centres from x0, y0 to x1, y1. */
   const region = new Float64Array(4);
 
-  function gather(i: number, f: number, px: number, py: number, reachX: number, reachY: number): void {
+  /** With so many forms a table for every pair that a sample touches would take all the time. */
+  const sparing = forms.length > 400;
+
+  function gather(
+    i: number,
+    f: number,
+    px: number,
+    py: number,
+    reachX: number,
+    reachY: number,
+    roughly = false
+  ): void {
     const hx = halfX[f]! + gap;
     const hy = halfY[f]! + gap;
     const left = px - reachX - hx;
@@ -203,15 +216,19 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
             jy + halfY[g]! <= low
           )
             continue;
-          addNear(i, j, f, g);
+          addNear(i, j, f, g, roughly);
         }
       }
   }
 
-  function addNear(i: number, j: number, f: number, g: number): void {
+  function addNear(i: number, j: number, f: number, g: number, roughly: boolean): void {
     const k = nearCount++;
     if (k === capacity) widenNear();
-    const word = store.find(g, f);
+    const word = roughly ? store.known(g, f) : store.find(g, f);
+    if (word < 0) {
+      addRough(k, i, j, f, g);
+      return;
+    }
     const id = word >> 1;
     nearItem[k] = j;
     nearTable[k] = id;
@@ -228,6 +245,23 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     near[a + 7] = head[h + 3]!;
     near[a + 8] = head[h + 4]!;
     near[a + 9] = head[h + 5]!;
+  }
+
+  /** A neighbour whose no-fit table does not stand yet, taken for an ellipse in its box. */
+  function addRough(k: number, i: number, j: number, f: number, g: number): void {
+    const a = k * NW;
+    const w = halfX[f]! + halfX[g]! + gap;
+    const h = halfY[f]! + halfY[g]! + gap;
+    nearItem[k] = j;
+    nearTable[k] = ROUGH;
+    near[a] = x[j]!;
+    near[a + 1] = y[j]!;
+    near[a + 2] = 1;
+    near[a + 3] = (weight[i * all + j]! * size[i]! * size[j]!) / unit;
+    near[a + 4] = -w;
+    near[a + 5] = -h;
+    near[a + 6] = w;
+    near[a + 7] = h;
   }
 
   function widenNear(): void {
@@ -270,6 +304,14 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
       const y0 = info[a + 5]!;
       if (dy <= y0 || dy >= info[a + 7]!) continue;
       const id = ids[k]!;
+      if (id === ROUGH) {
+        const u = dx / x0;
+        const v = dy / y0;
+        const within = 1 - Math.sqrt(u * u + v * v);
+        if (within > 0) sum -= within * (x0 > y0 ? x0 : y0) * info[a + 3]!;
+        if (sum >= bound) return sum;
+        continue;
+      }
       const s = id * SIZES;
       const cell =
         sizes[s + 2]! + (((dx - x0) * info[a + 8]!) | 0) + sizes[s + 3]! * (((dy - y0) * info[a + 9]!) | 0);
@@ -543,7 +585,7 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     const qx = onLattice(px, phaseX[c]!, sizeX[c]!, box[0]!, box[2]!);
     const qy = onLattice(py, phaseY[c]!, sizeY[c]!, box[1]!, box[3]!);
     if (qx !== qx || qy !== qy) return;
-    gather(i, choiceForm[c]!, qx, qy, 0, 0);
+    gather(i, choiceForm[c]!, qx, qy, 0, 0, sparing);
     const value = weigh(qx, qy, kept[6]!);
     if (value >= kept[6]!) return;
     const at = value < kept[2]! ? 0 : 4;
@@ -606,6 +648,10 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
         found[0] = kept[k]!;
         found[1] = kept[k + 1]!;
         found[2] = value;
+        if (sparing) {
+          gather(i, choiceForm[c]!, kept[k]!, kept[k + 1]!, 0, 0);
+          found[2] = weigh(kept[k]!, kept[k + 1]!, Infinity);
+        }
         descend(i, c);
         if (found[2]! >= best) continue;
         best = found[2]!;
@@ -745,6 +791,16 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     return worst;
   }
 
+  /** The greatest depth, in quanta, to which item i overlaps another. */
+  function deepest(i: number): number {
+    let most = 0;
+    for (let j = 0; j < all; j++) {
+      const value = loss[i * all + j]!;
+      if (value > 0) most = Math.max(most, (value * unit) / (size[i]! * size[j]!));
+    }
+    return most;
+  }
+
   function resetWeights(): void {
     for (let k = 0; k < heavyCount; k++) {
       const pair = heavy[k]!;
@@ -817,6 +873,7 @@ export function createField(task: Task, store: NoFitStore, random: () => number)
     extent,
     totalLoss,
     worstPair,
+    deepest,
     reweigh,
     resetWeights,
     /** Loss of the pair (i, j), unweighted, in yardsticks. */

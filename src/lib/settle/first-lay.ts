@@ -10,7 +10,7 @@ import type { Task } from './task';
 export function firstLay(task: Task, random: () => number, kept: Uint8Array | null, lay: Lay | null): Lay {
   const rows = Math.max(48, Math.min(480, Math.round((task.width / task.yardstick) * 14)));
   const cell = task.width / rows;
-  const raster = createRaster(rows);
+  const raster = createRaster(rows, Math.ceil(task.clearance / cell) + 2);
   const result = lay ?? emptyLay(task.items.length);
   for (const fixed of task.fixed)
     raster.occupy(runsOf(task.forms[fixed.form]!.ring, fixed.x, fixed.y, cell), 0, 0);
@@ -100,7 +100,6 @@ function shapeFrom(task: Task, number: number, latticed: boolean, cell: number):
     asks = smeared(asks);
     body = smeared(body);
   }
-  // What is asked of the clearance above the far edge falls off the cloth.
   return { asks, body, height: Math.ceil((2 * form.hy) / cell - 1e-6), width: 2 * form.hx };
 }
 
@@ -145,7 +144,7 @@ function freeRow(
     const moved = shape.asks.slice();
     for (let k = 0; k < moved.length; k += 3) {
       moved[k + 1]! += row;
-      moved[k + 2] = Math.min(raster.rows - 1, moved[k + 2]! + row);
+      moved[k + 2]! += row;
     }
     if (raster.freeRow(moved, 1, column, true) === 0) return row;
   }

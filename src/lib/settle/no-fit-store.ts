@@ -10,6 +10,8 @@ export interface NoFitStore {
    * before it is looked up.
    */
   find(f: number, g: number): number;
+  /** The same if the table stands already, else −1. */
+  known(f: number, g: number): number;
   /** Drops every table once they outgrow the cap. Numbers given before are void then. */
   trim(): void;
   built(): number;
@@ -86,6 +88,7 @@ export function createStore(
   return {
     tables,
     find,
+    known: (f, g) => (square ? square[f * count + g]! : (map.get(f * count + g) ?? -1)),
     trim() {
       if (tables.bytes() + map.size * 48 < cap) return;
       tables.clear();

@@ -85,9 +85,10 @@ export interface Raster {
   freeRow(runs: Runs, height: number, column: number, lowestOnly: boolean): number;
 }
 
-export function createRaster(rows: number): Raster {
-  const words = Math.ceil(rows / 32) + 1;
-  const levels = Math.ceil(Math.log2(rows + 1)) + 2;
+/** @param pad rows below and above the cloth that runs may reach into */
+export function createRaster(rows: number, pad: number): Raster {
+  const words = Math.ceil((rows + 2 * pad) / 32) + 1;
+  const levels = Math.ceil(Math.log2(rows + 2 * pad + 1)) + 1;
   const stride = words * levels;
   let columns = 256;
   let bits = new Int32Array(columns * stride);
@@ -107,7 +108,7 @@ export function createRaster(rows: number): Raster {
       const base = c * stride;
       const from = Math.max(0, runs[k + 1]! + row);
       const to = Math.min(rows - 1, runs[k + 2]! + row);
-      for (let r = from; r <= to; r++) bits[base + (r >> 5)]! |= 1 << (r & 31);
+      for (let r = from + pad; r <= to + pad; r++) bits[base + (r >> 5)]! |= 1 << (r & 31);
       if (last >= 0 && last !== c) raise(last);
       last = c;
     }
@@ -140,8 +141,8 @@ export function createRaster(rows: number): Raster {
     for (let k = 0; k < runs.length; k += 3) {
       const c = runs[k]! + column;
       if (c < 0 || c >= columns) continue;
-      const low = runs[k + 1]!;
-      const high = runs[k + 2]!;
+      const low = runs[k + 1]! + pad;
+      const high = runs[k + 2]! + pad;
       const level = 31 - Math.clz32(high - low + 1);
       const base = c * stride + level * words;
       block(base, low, used);
@@ -158,18 +159,8 @@ export function createRaster(rows: number): Raster {
     return -1;
   }
 
-  /** Blocks every row whose row + shift is taken. Rows below the cloth count as free: runs may start below 0. */
+  /** Blocks every row whose row + shift is taken. */
   function block(base: number, shift: number, used: number): void {
-    if (shift < 0) {
-      const whole = -shift >> 5;
-      const part = -shift & 31;
-      for (let w = used - 1; w >= whole; w--) {
-        const a = bits[base + w - whole]!;
-        const b = w - whole - 1 >= 0 ? bits[base + w - whole - 1]! : 0;
-        blocked[w]! |= part === 0 ? a : (a << part) | (b >>> (32 - part));
-      }
-      return;
-    }
     const whole = shift >> 5;
     const part = shift & 31;
     for (let w = 0; w < used && w + whole < words; w++) {

@@ -10,6 +10,9 @@ import { outlineArea, placeOf, taskOf, type Task } from './task';
 /** Bytes of no-fit tables that one solver keeps. */
 const TABLE_CAP = 120e6;
 
+/** What a pass counts for at least. */
+const PASS_LEAST = 50;
+
 export interface Solver {
   /** Looks at about `budget` more positions. `share` says how much of the time is gone, 0 … 1. */
   step(budget: number, share: number): void;
@@ -73,10 +76,11 @@ export function createSolver(
     step(budget, share) {
       course.share = share;
       const until = field.looked() + budget;
-      do {
+      // Each pass counts for something, so that a step ends even where nothing is left to look at.
+      for (let passes = 0; field.looked() + passes * PASS_LEAST < until; passes++) {
         store.trim();
         if (closed(task, course) || run.next().done) return;
-      } while (field.looked() < until);
+      }
     },
     evaluations: () => field.looked(),
     done: () => n === 0 || closed(task, course),
@@ -127,7 +131,8 @@ function beginning(problem: SettleProblem, task: Task, field: Field, random: () 
     lay.x[i] = place.x;
     lay.y[i] = place.y;
   });
-  // What overlaps is taken up again, the worst first, and laid anew.
+  // What overlaps by more than touching is taken up again, the worst first, and laid anew.
+  const touching = problem.touching * task.scale * 0.9;
   for (;;) {
     const trial = emptyLay(n);
     copyLay(lay, trial);
@@ -135,7 +140,12 @@ function beginning(problem: SettleProblem, task: Task, field: Field, random: () 
     field.load(trial);
     let worst = -1;
     for (let i = 0; i < n; i++)
-      if (kept[i] && field.overlaps[i]! > (worst < 0 ? 0 : field.overlaps[worst]!)) worst = i;
+      if (
+        kept[i] &&
+        field.deepest(i) > touching &&
+        (worst < 0 || field.overlaps[i]! > field.overlaps[worst]!)
+      )
+        worst = i;
     if (worst < 0) return trial;
     kept[worst] = 0;
   }
