@@ -18,10 +18,15 @@ export interface HeldOverlap {
 /** Most overlaps that are hatched in one frame; the deepest first. */
 const MOST_HATCHED = 6;
 
+/** A check that took longer than this (milliseconds) makes the next ones rest, so that the pieces stay with the hand. */
+const HEAVY_MS = 2.5;
+const REST_MS = 70;
+
 export class Handful {
   readonly ids: readonly string[];
   #step: Point | null = null;
   #report: LiveReport | null = null;
+  #restUntil = 0;
 
   constructor(
     /** As they lay when they were taken; from the Rail: with their middle under the pointer. */
@@ -33,14 +38,25 @@ export class Handful {
     this.ids = pieces.map(({ id }) => id);
   }
 
-  /** What the check says with the pieces carried by `step`. */
+  /** Whether the last report is of another step: ask again after a moment. */
+  behind(step: Point): boolean {
+    return this.#step?.x !== step.x || this.#step.y !== step.y;
+  }
+
+  /**
+   * What the check says with the pieces carried by `step`. After a heavy check (many pieces over many) the same answer
+   * comes for a few frames.
+   */
   report(step: Point): LiveReport {
-    if (this.#report && this.#step?.x === step.x && this.#step.y === step.y) return this.#report;
+    const began = performance.now();
+    if (this.#report && (!this.behind(step) || began < this.#restUntil)) return this.#report;
     this.#report = this.live.moveTo(
       this.ids,
       this.pieces.map(({ placement }) => stepped(placement, step))
     );
     this.#step = step;
+    const ended = performance.now();
+    this.#restUntil = ended - began > HEAVY_MS ? ended + REST_MS : 0;
     return this.#report;
   }
 

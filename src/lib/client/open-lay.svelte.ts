@@ -71,6 +71,7 @@ export class OpenLay {
   readonly saving: LaySaving;
   readonly checking: LayChecking;
   #live: Live | null = null;
+  #cancelCatchUp: (() => void) | null = null;
 
   /** What the server says of the lay beside its document. */
   facts: Omit<LayOnServer, 'document' | 'panels' | 'version' | 'verdict' | 'verdictVersion'> = $state.raw()!;
@@ -256,10 +257,16 @@ export class OpenLay {
 
   /** Carries what is in hand to `step` from where it was taken. */
   carry(step: Point): void {
-    if (!this.inHand) return;
+    const hand = this.inHand;
+    if (!hand) return;
     const to = { x: snap(step.x), y: snap(step.y) };
     if (to.x === this.carried.x && to.y === this.carried.y) return;
     this.carried = to;
+    // A check that rested is asked again once the hand is still.
+    this.#cancelCatchUp?.();
+    this.#cancelCatchUp = this.world.later(() => {
+      if (this.inHand === hand && hand.behind(this.carried)) this.carried = { ...this.carried };
+    }, 80);
   }
 
   /** Lays down what is in hand: on the cloth, or back on the Rail. */
