@@ -5,12 +5,15 @@ import { database } from '$lib/server/database';
 import * as guides from '$lib/server/guides';
 import { newId } from '$lib/server/ids';
 import * as imports from '$lib/server/imports';
+import * as jobs from '$lib/server/jobs';
 import * as invitations from '$lib/server/invitations';
 import { registerAllJobs } from '$lib/server/job-kinds';
 import { JobRunner } from '$lib/server/job-runner';
 import * as layRelease from '$lib/server/lay-release';
 import * as lays from '$lib/server/lays';
 import * as sessions from '$lib/server/sessions';
+import * as settleRuns from '$lib/server/settle-runs';
+import type { SettleBest } from '$lib/settle/run';
 import { cookieJar, type House } from './cast';
 import { good, makeOrder } from './lay-orders';
 
@@ -42,6 +45,8 @@ export interface Props {
   /** A guide that is made, and one that waits. */
   readonly guide: string;
   readonly waitingGuide: string;
+  /** A settle run that was stopped, its best on offer. */
+  readonly settled: string;
   readonly invitation: string;
   /** The public id of a session of the owner. */
   readonly session: string;
@@ -107,6 +112,23 @@ export async function makeProps(house: House): Promise<Props> {
   const { job: guide } = await print({ kind: 'sheets', paper: 'A4' });
   await new JobRunner().drain();
   const { job: waitingGuide } = await print({ kind: 'whole' });
+  const { job: settled } = await settleRuns.create(scope, lay, {
+    version: layVersion,
+    budgetSeconds: 60,
+    from: 'scratch',
+    pieces: 'all'
+  });
+  const best: SettleBest = {
+    placements: layDocument.placements,
+    length: 720,
+    efficiency: 0.5,
+    leftOver: 0,
+    at: 1
+  };
+  await db('jobs')
+    .where({ id: settled })
+    .update({ progress: JSON.stringify({ seconds: 1, evaluations: 1, turns: 1, best, ended: null }) });
+  await jobs.stop(scope, settled);
   const jar = cookieJar();
   await sessions.start(jar, house.owner.id, house.id, 'another browser of the owner');
   return {
@@ -128,6 +150,7 @@ export async function makeProps(house: House): Promise<Props> {
     file: (await imports.read(scope, upload)).fileId,
     guide,
     waitingGuide,
+    settled,
     invitation: await invitations.create(scope, { email: 'guest@far.example', role: 'cutter' }),
     session: (await sessions.list(house.owner.id))[0]!.publicId
   };

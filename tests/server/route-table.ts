@@ -331,6 +331,27 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     call: (own) => params({ id: own.lay, number: '1' })
   },
 
+  // Settle runs.
+  '/api/lays/[id]/settle GET': { access: 'lays: change', call: (own) => onLay(own) },
+  '/api/lays/[id]/settle POST': {
+    access: 'lays: change',
+    call: (own) => onLay(own, { version: own.layVersion, budgetSeconds: 60, from: 'here', pieces: 'all' })
+  },
+  '/api/lays/[id]/settle/[job] POST': {
+    access: 'lays: change',
+    call: (own) => params({ id: own.lay, job: own.settled }, { json: { answer: 'left' } }),
+    foreign: (own, other) => ({
+      run: params({ id: own.lay, job: other.settled }, { json: { answer: 'left' } })
+    })
+  },
+  '/api/lays/[id]/settle/[job]/lay POST': {
+    access: 'lays: change',
+    call: (own) => params({ id: own.lay, job: own.settled }, { json: { name: 'Settled' } }),
+    foreign: (own, other) => ({
+      run: params({ id: own.lay, job: other.settled }, { json: { name: 'Settled' } })
+    })
+  },
+
   // Guides and jobs.
   '/lays/[id]/guides load': { access: 'guides: print', call: (own) => onLay(own) },
   '/lays/[id]/guides ?/make': {

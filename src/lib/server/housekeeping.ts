@@ -4,7 +4,7 @@ import * as sessions from './sessions';
 
 const day = 86_400_000;
 
-/** Deletes what nobody needs any more: ended sessions, dead links, the installation's finished jobs, old sent mails. */
+/** Deletes what nobody needs any more: ended sessions, dead links, the installation's finished jobs, old settle runs and sent mails. */
 export async function tidy(now = Date.now()): Promise<void> {
   await sessions.sweep();
   for (const table of ['sign_ups', 'password_resets', 'address_changes', 'invitations'])
@@ -15,6 +15,11 @@ export async function tidy(now = Date.now()): Promise<void> {
     .whereNull('studio_id')
     .whereIn('state', ['done', 'failed', 'stopped'])
     .where('updated_at', '<', now - day)
+    .delete();
+  await database()('jobs')
+    .where({ kind: 'settle' })
+    .whereIn('state', ['done', 'failed', 'stopped'])
+    .where('updated_at', '<', now - 30 * day)
     .delete();
   await database()('messages')
     .where({ state: 'sent' })

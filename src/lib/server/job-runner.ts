@@ -197,7 +197,9 @@ export class JobRunner {
           if (Date.now() - lastWrite >= progressEvery) write();
         },
         stopped: () => stopWanted,
-        signal: abort.signal
+        signal: abort.signal,
+        othersWait: async () =>
+          (await this.#candidates(kind.lane ?? 'quick')).some(({ studio_id }) => studio_id !== row.studio_id)
       });
       outcome = { state: stopWanted ? 'stopped' : 'done', result };
     } catch (failure) {
@@ -214,8 +216,9 @@ export class JobRunner {
 
   #outcomeOf(failure: unknown, row: ClaimedRow, most: number, stopWanted: boolean): Outcome {
     if (stopWanted) return { state: 'stopped' };
-    // Interrupted by the shutdown: the attempt does not count.
-    if (!this.#open) return { state: 'waiting', notBefore: 0, attempts: row.attempts - 1 };
+    // Interrupted by the shutdown, or only giving way: the attempt does not count.
+    if (!this.#open || failure instanceof jobs.HandedBack)
+      return { state: 'waiting', notBefore: 0, attempts: row.attempts - 1 };
     if (failure instanceof Problem) return { state: 'failed', error: failure.message };
     log.error({ job: row.id, kind: row.kind, attempt: row.attempts, err: failure }, 'job failed');
     if (row.attempts < most) return { state: 'waiting', notBefore: Date.now() + 2000 * 4 ** row.attempts };

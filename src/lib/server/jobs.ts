@@ -45,6 +45,19 @@ export interface JobRun {
    * (`signal.throwIfAborted()`); the job is claimed again after the restart, with its last progress as `previous`.
    */
   readonly signal: AbortSignal;
+  /** Whether another studio waits for the place that this job has. Long jobs ask, and then give it up (`HandedBack`). */
+  othersWait(): Promise<boolean>;
+}
+
+/**
+ * Thrown by a long job that gives its place to another studio: it waits for its next turn, with its last progress as
+ * `previous`.
+ */
+export class HandedBack extends Error {
+  constructor() {
+    super('Handed back');
+    this.name = 'HandedBack';
+  }
 }
 
 export interface JobKind<I = unknown> {

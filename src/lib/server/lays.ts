@@ -87,14 +87,16 @@ async function nextName(scope: Scope, lay: { orderId: string; clothId: string })
   return `Lay ${Number(counted?.count ?? 0) + 1}`;
 }
 
-/** A copy of a lay under another name, open, with the order's facts as they stand. */
+/** A copy of a lay (or of `document`, made from it) under another name, open, with the order's facts as they stand. */
 export async function duplicate(
   scope: Scope,
   id: string,
   name: string,
-  now = Date.now()
+  now = Date.now(),
+  other?: LayDocument
 ): Promise<{ id: string }> {
-  const { row, facts, document } = await current(scope, id);
+  const { row, facts, document: own } = await current(scope, id);
+  const document = other ?? own;
   if (name.trim() === '') throw invalid({ name: 'Give the lay a name.' });
   return insert(
     scope,

@@ -14,6 +14,8 @@ export interface SettleRun {
   readonly seed: number;
   /** How long to go on; Infinity until the signal aborts or nothing better can exist. */
   readonly seconds: number;
+  /** How long a former part of the same run took: the search goes on at that share of the whole. Default 0. */
+  readonly spent?: number;
   /**
    * Set for a run that repeats exactly: so many rounds of so many positions a worker, the best lay exchanged after each.
    * `seconds` counts for nothing then.
@@ -45,13 +47,15 @@ const CYCLE = 120;
  * @throws the error of a worker that fails; an Error if no lay passed the check
  */
 export async function settleWithWorkers(problem: SettleProblem, run: SettleRun): Promise<SettleOutcome> {
-  const { repeatable, tellEvery = 250 } = run;
+  const { repeatable, tellEvery = 250, spent = 0 } = run;
   const started = performance.now();
   const elapsed = () => (performance.now() - started) / 1000;
-  const horizon = repeatable ? (repeatable.rounds * repeatable.evaluations) / 1e6 : run.seconds;
+  const horizon = repeatable ? (repeatable.rounds * repeatable.evaluations) / 1e6 : spent + run.seconds;
   const floor = horizon <= 20 ? 0.01 : horizon <= 150 ? 0.006 : 0.004;
   const shareAt = (seconds: number) =>
-    Number.isFinite(run.seconds) ? seconds / run.seconds : (seconds % CYCLE) / CYCLE;
+    Number.isFinite(run.seconds)
+      ? (spent + seconds) / (spent + run.seconds)
+      : ((spent + seconds) % CYCLE) / CYCLE;
 
   let best: SettleResult | null = null;
   let shared: Float64Array | null = null;

@@ -36,13 +36,7 @@ export async function runInWorker<R, P = unknown>(
 ): Promise<R> {
   const { timeoutMs, memoryMb, onProgress, signal, onStart, transfer } = limits;
   if (signal?.aborted) throw stopped();
-  const worker = new Worker(workerFile(name), {
-    workerData: data,
-    transferList: transfer ? [...transfer] : [],
-    resourceLimits: { maxOldGenerationSizeMb: memoryMb, maxYoungGenerationSizeMb: Math.ceil(memoryMb / 4) },
-    env: {},
-    stdout: false
-  });
+  const worker = openWorker(name, data, memoryMb, transfer);
   let timer: NodeJS.Timeout | undefined;
   let onAbort: (() => void) | undefined;
   try {
@@ -66,6 +60,22 @@ export async function runInWorker<R, P = unknown>(
     if (onAbort) signal?.removeEventListener('abort', onAbort);
     await worker.terminate();
   }
+}
+
+/** Starts `<name>.worker.js` with `data`: for work that asks and answers many times. The caller ends it. */
+export function openWorker(
+  name: string,
+  data: unknown,
+  memoryMb: number,
+  transfer: readonly Transferable[] = []
+): Worker {
+  return new Worker(workerFile(name), {
+    workerData: data,
+    transferList: [...transfer],
+    resourceLimits: { maxOldGenerationSizeMb: memoryMb, maxYoungGenerationSizeMb: Math.ceil(memoryMb / 4) },
+    env: {},
+    stdout: false
+  });
 }
 
 const tooLong = (ms: number) =>
