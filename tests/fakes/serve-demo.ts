@@ -33,7 +33,7 @@ const server = spawn(process.execPath, ['build'], {
   stdio: ['ignore', 'inherit', 'inherit'],
   env: {
     HOST: '127.0.0.1',
-    BODY_SIZE_LIMIT: '8M',
+    BODY_SIZE_LIMIT: '32M',
     WARPWISE_LOG_LEVEL: 'warn',
     ...process.env,
     PORT: String(port),
