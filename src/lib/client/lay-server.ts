@@ -78,7 +78,8 @@ export interface SaveAnswer {
   readonly savedAt: number;
 }
 
-async function ask<T>(path: string, init: RequestInit): Promise<T> {
+/** Asks the server; its answer as JSON. */
+export async function ask<T>(path: string, init: RequestInit): Promise<T> {
   let response: Response;
   try {
     response = await fetch(path, {
@@ -101,7 +102,7 @@ async function ask<T>(path: string, init: RequestInit): Promise<T> {
   );
 }
 
-function post<T>(path: string, body: unknown): Promise<T> {
+export function post<T>(path: string, body: unknown): Promise<T> {
   return ask<T>(path, { method: 'POST', body: JSON.stringify(body) });
 }
 

@@ -14,7 +14,9 @@ export interface Desk {
   readonly lay: OpenLay;
   readonly table: TableView;
   /** Panels of the screen that a command opens. */
-  readonly open: (sheet: 'help' | 'copy' | 'cloth' | 'release' | 'keep' | 'revisions' | 'pieces') => void;
+  readonly open: (
+    sheet: 'help' | 'copy' | 'cloth' | 'release' | 'keep' | 'revisions' | 'settle' | 'pieces'
+  ) => void;
 }
 
 export type CommandGroup = 'Pieces' | 'Turning' | 'Snug' | 'Moving' | 'Picking' | 'Looking' | 'Lay';
@@ -127,6 +129,14 @@ export const tableCommands: readonly TableCommand[] = [
     keys: ['Shift+P'],
     enabled: ({ lay }) => !lay.readOnly && lay.loose.length > 0,
     perform: ({ lay }) => lay.placeAll()
+  },
+  {
+    id: 'settle',
+    label: 'Settle the pieces',
+    group: 'Pieces',
+    keys: ['A'],
+    enabled: writable,
+    perform: ({ open }) => open('settle')
   },
   {
     id: 'to-rail',
