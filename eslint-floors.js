@@ -28,7 +28,6 @@ const impure = [
   '@sveltejs/*',
   'knex',
   'konva',
-  'svelte-konva',
   'node:*',
   'better-sqlite3'
 ];

@@ -1,4 +1,3 @@
-import { fileURLToPath } from 'node:url';
 import { sveltekit } from '@sveltejs/kit/vite';
 import tailwindcss from '@tailwindcss/vite';
 import type { Plugin } from 'vite';
@@ -16,14 +15,6 @@ const workersInDev: Plugin = {
 
 export default defineConfig({
   plugins: [tailwindcss(), sveltekit(), workersInDev],
-  resolve: {
-    alias: {
-      // The index of the adapters pulls in every validation library; only zod is used.
-      'sveltekit-superforms/adapters': fileURLToPath(
-        new URL('./node_modules/sveltekit-superforms/dist/adapters/zod4.js', import.meta.url)
-      )
-    }
-  },
   test: {
     projects: [
       {
