@@ -112,7 +112,9 @@ function refuseHopeless(document: LayDocument, panels: PanelBook, choice: Settle
         ? 'No piece hangs on the Rail. Settle all pieces instead.'
         : 'Every piece on the cloth is locked, and none hangs on the Rail.'
     );
-  const faults = problemFaults(problem);
+  // What only stays, because the loose pieces are laid around it, may lie as badly as it likes: the check tells of it.
+  const free = new Set(document.placements.filter(({ locked }) => !locked).map(({ id }) => id));
+  const faults = problemFaults(problem).filter(({ pieces }) => !pieces.some((id) => free.has(id)));
   if (faults.length > 0)
     throw new Problem(
       400,

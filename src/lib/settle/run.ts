@@ -4,6 +4,7 @@ import type { PanelBook } from '$lib/lay/panel-book';
 import type { Finding, FindingKind, Verdict } from '$lib/lay/verdict';
 import type { Millimetres, Share } from '$lib/units/measure';
 import { fromLay, toPlacements, type LaySettle, type SettleReach } from './from-lay';
+import { withNeededHands } from './needed-hands';
 import type { SettleResult } from './problem';
 
 /*
@@ -68,8 +69,9 @@ export function problemOfRun(
 ): RunProblem {
   const reach: SettleReach = choice.pieces;
   if (!best) {
-    const settle = fromLay(document, book, { reach, from: choice.from });
-    return { settle, placementsOf: (result, newId) => toPlacements(document, settle, result, newId) };
+    const begun = reach === 'all' ? withNeededHands(document, book) : document;
+    const settle = fromLay(begun, book, { reach, from: choice.from });
+    return { settle, placementsOf: (result, newId) => toPlacements(begun, settle, result, newId) };
   }
   // What stays is locked for the while, so that what the run placed is told apart from what lay there before.
   const before = new Map(document.placements.map((one) => [one.id, one]));
@@ -113,15 +115,19 @@ const ofPlaces: readonly FindingKind[] = [
 ];
 
 /**
- * What stops in `after` and is the run's doing: not what was there before between pieces that did not move, and not the
- * pieces that it says it left over.
+ * What stops in `after` and is the run's doing: not what was there before between pieces that did not move, not the
+ * pieces that it says it left over, and not what the order or the style has wrong.
  */
 export function newStops(
   before: { readonly document: LayDocument; readonly verdict: Verdict },
   after: { readonly document: LayDocument; readonly verdict: Verdict },
   leftOver: number
 ): Finding[] {
-  const known = new Set(before.verdict.findings.map(keyOf));
+  const places = new Set(before.verdict.findings.map(placeKey));
+  const counts = new Set(before.verdict.findings.map(countKey));
+  const unknown = new Set(
+    after.verdict.findings.filter(({ kind }) => kind === 'unknown-panel').map(subjectKey)
+  );
   const was = new Map(before.document.placements.map((one) => [one.id, one]));
   const is = new Map(after.document.placements.map((one) => [one.id, one]));
   const unmoved = (id: string): boolean => {
@@ -136,14 +142,21 @@ export function newStops(
       a.flip === b.flip
     );
   };
-  return after.verdict.findings.filter(
-    (finding) =>
-      finding.severity === 'stops' &&
-      !(finding.kind === 'missing' && leftOver > 0) &&
-      !(known.has(keyOf(finding)) && (!ofPlaces.includes(finding.kind) || finding.placements.every(unmoved)))
-  );
+  return after.verdict.findings.filter((finding) => {
+    if (finding.severity !== 'stops') return false;
+    // What was missing before was there to be laid.
+    if (finding.kind === 'missing') return leftOver === 0 && !unknown.has(subjectKey(finding));
+    if (ofPlaces.includes(finding.kind))
+      return !places.has(placeKey(finding)) || !finding.placements.every(unmoved);
+    return !counts.has(countKey(finding));
+  });
 }
 
-function keyOf({ kind, placements, subject }: Finding): string {
-  return `${kind} ${[...placements].sort().join()} ${subject ? `${subject.garment} ${subject.panel} ${subject.hand}` : ''}`;
+const placeKey = ({ kind, placements }: Finding): string => `${kind} ${[...placements].sort().join()}`;
+const subjectKey = ({ subject }: Finding): string => (subject ? `${subject.garment} ${subject.panel}` : '');
+
+/** Too many of one panel is one mistake, whichever of its pieces is named, and whatever hand the piece lies as. */
+function countKey(finding: Finding): string {
+  const kind = finding.kind === 'wrong-hand' ? 'surplus' : finding.kind;
+  return `${kind} ${subjectKey(finding)}`;
 }
