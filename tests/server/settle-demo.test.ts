@@ -82,9 +82,9 @@ describe('a settled lay of the demo', () => {
     expect(document.placements.length).toBeGreaterThan(lay.document.placements.length);
   });
 
-  it('keeps flaws, clearance, locks, a measured length and one way for each garment', async () => {
+  it('keeps flaws, clearance, locks and a measured length', async () => {
     const lay = await named('First lay');
-    const [first] = lay.document.placements;
+    const last = lay.document.placements.at(-1)!;
     const document: LayDocument = {
       ...lay.document,
       strip: {
@@ -97,13 +97,13 @@ describe('a settled lay of the demo', () => {
         ]
       },
       placements: lay.document.placements.map((one) =>
-        one === first ? { ...one, x: one.x + 1500, locked: true } : one
+        one === last ? { ...one, x: one.x + 40, locked: true } : one
       )
     };
     const { version } = await lays.save(scope, lay.id, { version: lay.version, saveId: newId(), document });
     const { best } = await settle({ ...lay, version }, { from: 'scratch' });
     const laid = laidBy(document, best!);
     expect(check(laid, lay.panels).findings).toEqual([]);
-    expect(laid.placements).toContainEqual(document.placements[0]);
+    expect(laid.placements).toContainEqual(document.placements.at(-1));
   });
 });
