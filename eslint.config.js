@@ -6,7 +6,9 @@ import { floorRules } from './eslint-floors.js';
 import svelteConfig from './svelte.config.js';
 
 export default ts.config(
-  { ignores: ['build/', '.svelte-kit/', 'data/', 'static/', 'test-results/', 'build-*/', 'playwright-report/'] },
+  {
+    ignores: ['build/', '.svelte-kit/', 'data/', 'static/', 'test-results/', 'build-*/', 'playwright-report/']
+  },
   js.configs.recommended,
   ...ts.configs.recommended,
   ...svelte.configs['flat/recommended'],

@@ -56,7 +56,18 @@ export function madeUpShape(
   };
 }
 
-const names = ['Front', 'Back', 'Side front', 'Side back', 'Sleeve', 'Facing', 'Collar', 'Cuff', 'Pocket', 'Yoke'];
+const names = [
+  'Front',
+  'Back',
+  'Side front',
+  'Side back',
+  'Sleeve',
+  'Facing',
+  'Collar',
+  'Cuff',
+  'Pocket',
+  'Yoke'
+];
 
 export interface MadeUpLay {
   readonly document: LayDocument;
