@@ -1,3 +1,4 @@
+import type { SettleJob } from '$lib/client/settle-server';
 import { clothCost } from '$lib/cloth/cost';
 import type { Readings } from '$lib/lay/verdict';
 import { pieces } from '$lib/lay/wording';
@@ -40,9 +41,8 @@ export function timeShare(choice: SettleChoice, progress: SettleProgress | null)
 export interface GainWords {
   /** Better, worse or the same as the lay before; null when that one's length does not count. */
   readonly sense: 'better' | 'worse' | 'same' | null;
-  readonly length: string;
-  /** What the cloth to buy costs less or more; null without a price, or when it is the same. */
-  readonly money: string | null;
+  /** In length and, with a price, in money. */
+  readonly words: string;
 }
 
 /** What the settled lay gains against the lay before. */
@@ -56,29 +56,25 @@ export function gainWords(
   if (!before.counts)
     return {
       sense: null,
-      length:
+      words:
         loose > 0
           ? `Before, ${pieces(loose)} ${loose === 1 ? 'was' : 'were'} loose: nothing to compare.`
-          : 'Before, findings stopped the lay: nothing to compare.',
-      money: null
+          : 'Before, findings stopped the lay: nothing to compare.'
     };
   const gain = before.readings.lengthUsed - after.lengthUsed;
-  const sense = Math.abs(gain) < 0.05 ? 'same' : gain > 0 ? 'better' : 'worse';
-  return {
-    sense,
-    length:
-      sense === 'same'
-        ? 'As long as the lay before'
-        : `${shortLength(Math.abs(gain), unit)} ${sense === 'better' ? 'less' : 'more'} than before`,
-    money: price && moneyWords(before.readings.clothToBuy.total, after.clothToBuy.total, price)
-  };
+  const saved = price ? costOf(before.readings, price) - costOf(after, price) : 0;
+  if (Math.abs(gain) < 0.05) return { sense: 'same', words: 'As long as the lay before' };
+  const length = shortLength(Math.abs(gain), unit);
+  const money = price && formatMoney(Math.abs(saved), price.currency);
+  const [sense, word] = gain > 0 ? (['better', 'less'] as const) : (['worse', 'more'] as const);
+  // Cloth is bought in whole steps: what is saved on the table may cost the same.
+  if (money && saved === 0)
+    return { sense, words: `${length} ${word} than before; the cloth to buy stays the same` };
+  return { sense, words: `${length}${money ? ` and ${money}` : ''} ${word} than before` };
 }
 
-function moneyWords(before: number, after: number, { minor, unit, currency }: Price): string | null {
-  const saved = clothCost(before, minor, unit) - clothCost(after, minor, unit);
-  if (saved === 0) return 'the same cloth to buy';
-  return `${formatMoney(Math.abs(saved), currency)} ${saved > 0 ? 'less' : 'more'} to buy`;
-}
+const costOf = ({ clothToBuy }: Readings, { minor, unit }: Price): number =>
+  clothCost(clothToBuy.total, minor, unit);
 
 /** How far a lay is from the least length. */
 export function leastWords(readings: Readings, unit: LengthUnit): string {
@@ -89,9 +85,9 @@ export function leastWords(readings: Readings, unit: LengthUnit): string {
   return `${shortLength(over, unit)} above the least length${share}`;
 }
 
-/** What ended the search. */
-export function endWords(ended: SettleProgress['ended'], failed: string | null): string {
-  if (failed) return failed;
-  if (ended === 'least') return 'Done: no lay of these pieces can be shorter.';
-  return ended === 'stopped' ? 'Stopped.' : 'Done.';
+/** What ended the search; nothing when it failed, which has words of its own. */
+export function endWords(state: SettleJob['state'], ended: SettleProgress['ended'] | undefined): string {
+  if (state === 'failed') return '';
+  if (ended === 'least') return 'No lay of these pieces can be shorter';
+  return state === 'stopped' ? 'Stopped' : 'Done';
 }
