@@ -54,7 +54,13 @@ export class SettleRun {
   async resume(): Promise<void> {
     try {
       const { run } = await this.#server.current();
-      if (run) this.#attach(run);
+      if (!run) return;
+      const best = (run.job.result ?? run.job.progress)?.best;
+      // Nothing to take, or taken in a visit that lost its connection before it could say so.
+      if (best && isOver(run.job) && same(best.placements, this.lay.document.placements)) {
+        await this.#server.answer(run.job.id, 'taken');
+        this.lay.say('The best that settle found is the lay on the table.');
+      } else this.#attach(run);
     } catch (failure) {
       this.#failed(failure);
     }
@@ -145,8 +151,15 @@ export class SettleRun {
       document: { ...this.lay.document, placements },
       said: `Settled lay taken: ${pieces(placements.length)} on ${this.#length(best.length)}.`
     });
-    if (taken) await this.#answer(run.job.id, 'taken');
-    return taken;
+    if (!taken) return false;
+    this.#close();
+    try {
+      await this.#server.answer(run.job.id, 'taken');
+    } catch (failure) {
+      // The next visit finds the lay as the run made it, and says so then.
+      if (!(failure instanceof Offline)) this.#failed(failure);
+    }
+    return true;
   }
 
   /** Keeps the best as a lay of its own; gives its id. */
@@ -199,6 +212,6 @@ export class SettleRun {
 }
 
 function wordsOf(failure: unknown): string {
-  if (failure instanceof Offline) return 'No connection to the studio’s server. A run there goes on.';
+  if (failure instanceof Offline) return 'No connection to the studio’s server: waiting for it.';
   return failure instanceof Error ? failure.message : String(failure);
 }

@@ -49,6 +49,10 @@ export const ownWords: readonly (readonly [string, string])[] = [
   ['reading', 'A number that is computed of a lay: length used, efficiency, least length, cloth to buy.'],
   ['finding', 'One thing that the check found, with its place and its measure.'],
   ['snug', 'To push the chosen pieces one way until they touch, at the clearance.'],
+  [
+    'settle',
+    'To let the server place the pieces. Each such search is a settle run; its result is taken or left, never written over your work.'
+  ],
   ['least length', 'The length below which no lay of these pieces can exist.'],
   ['need, yield', 'A piece that an order still asks for; the pieces that a placement gives.'],
   ['revision', 'A lay as it was kept at one moment, with a number that the printed guide carries.'],
