@@ -78,6 +78,7 @@ test('an order’s pieces are settled, watched, taken in one step, and released'
   await page.keyboard.press('Escape');
   await card(page).getByRole('button', { name: 'Take it' }).click();
   await expect(card(page)).toBeHidden();
+  await expect(page.getByTestId('cloth')).toBeFocused();
   await expect(length(page)).toHaveText(settled);
   await expect(page.getByTestId('pieces-placed')).toHaveText(placed);
   await page.getByTestId('cloth').focus();

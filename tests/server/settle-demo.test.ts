@@ -37,7 +37,7 @@ const named = async (name: string) => {
 
 async function settle(lay: lays.Lay, choice: Partial<SettleChoice>): Promise<SettleProgress> {
   const { job } = await settleRuns.create(scope, lay.id, {
-    budgetSeconds: 3,
+    budgetSeconds: 2,
     from: 'scratch',
     pieces: 'all',
     seed: 1,

@@ -10,7 +10,7 @@ import * as lays from '$lib/server/lays';
 import type { Problem } from '$lib/server/problem';
 import type { Scope } from '$lib/server/scope';
 import * as settleRuns from '$lib/server/settle-runs';
-import { laidBy, type SettleChoice, type SettleProgress } from '$lib/settle/run';
+import { laidBy, type SettleBest, type SettleChoice, type SettleProgress } from '$lib/settle/run';
 import { makeCast, type Cast } from './cast';
 import { cutPanel, makeOrder, panels, type OrderRows } from './lay-orders';
 
@@ -47,6 +47,17 @@ const told = async (job: string) => {
   const found = await jobs.read(scope, job);
   return (found.result ?? found.progress) as SettleProgress;
 };
+/** Runs a job until it has a first lay, then stops it: where any lay will do. */
+const firstLayOf = async (job: string): Promise<SettleBest> => {
+  const drained = runner.drain();
+  await vi.waitFor(async () => expect((await told(job))?.best).toBeTruthy(), {
+    timeout: 20_000,
+    interval: 50
+  });
+  await jobs.stop(scope, job);
+  await drained;
+  return (await told(job)).best!;
+};
 const save = async (change: (document: LayDocument) => LayDocument) => {
   const { document, version } = await lays.read(scope, lay);
   await lays.save(scope, lay, { version, saveId: newId(), document: change(document) });
@@ -76,10 +87,8 @@ describe('a settle run', () => {
   });
 
   it('leaves locked pieces where they are, and settles only loose ones around the rest when asked', async () => {
-    const { job: first } = await begin();
-    await runner.drain();
-    const { best } = await told(first);
-    const [locked, kept, ...rest] = best!.placements.map((one, i) =>
+    const best = await firstLayOf((await begin()).job);
+    const [locked, kept, ...rest] = best.placements.map((one, i) =>
       i === 0 ? { ...one, x: one.x + 2000, locked: true } : one
     );
     await save((document) => ({ ...document, placements: [locked!, kept!, ...rest.slice(2)] }));
@@ -98,10 +107,8 @@ describe('a settle run', () => {
   });
 
   it('from here never ends with more cloth than the good lay that it began with', async () => {
-    await begin();
-    await runner.drain();
     const { document, panels: book } = await lays.read(scope, lay);
-    const good = laidBy(document, (await told((await settleRuns.read(scope, lay))!.job.id)).best!);
+    const good = laidBy(document, await firstLayOf((await begin()).job));
     await save(() => good);
     const { job } = await begin({ from: 'here' });
     await runner.drain();
@@ -137,18 +144,21 @@ describe('before anything runs', () => {
   });
 
   it('refuses locks that contradict each other, and what there is nothing to do with', async () => {
-    await begin();
-    await runner.drain();
-    const { best } = await told((await settleRuns.read(scope, lay))!.job.id);
-    const [a, b, ...rest] = best!.placements;
+    const best = await firstLayOf((await begin()).job);
+    const yokes = best.placements.filter(({ panel }) => panel === 'yoke').map(({ id }) => id);
+    // Two yokes 5 mm apart, one on the other.
     await save((document) => ({
       ...document,
-      placements: [{ ...a!, locked: true }, { ...b!, x: a!.x + 5, y: a!.y, locked: true }, ...rest]
+      placements: best.placements.map((one) =>
+        yokes.indexOf(one.id) === 0 || yokes.indexOf(one.id) === 1
+          ? { ...one, x: 100 + 5 * yokes.indexOf(one.id), y: 100, turn: 0, locked: true }
+          : one
+      )
     }));
     const problem = await refusal(begin());
     expect(problem).toMatchObject({ status: 400, type: 'cannot-settle' });
     expect((problem.extra.faults as { kind: string }[]).map(({ kind }) => kind)).toContain('locks-collide');
-    await save((document) => ({ ...document, placements: [...best!.placements] }));
+    await save((document) => ({ ...document, placements: [...best.placements] }));
     expect(await refusal(begin({ pieces: 'loose' }))).toMatchObject({
       status: 400,
       type: 'nothing-to-settle'
@@ -172,6 +182,11 @@ describe('before anything runs', () => {
     const theirs = await makeOrder(elsewhere);
     const { id: other } = await lays.create(elsewhere, { orderId: theirs.order, clothId: theirs.main });
     await settleRuns.create(elsewhere, other, { ...quick, version: 1 });
+    // One that was told to stop, but has not ended yet, is no obstacle.
+    await cast
+      .db('jobs')
+      .where({ id: job })
+      .update({ state: 'running', lease_until: Date.now() + 1e6 });
     await jobs.stop(scope, job);
     await begin({}, second);
     await cast.db('lays').where({ id: lay }).update({ state: 'cut' });
@@ -183,7 +198,7 @@ describe('the result', () => {
   it('stays on offer with the lay it began with until it is taken or left, even when the lay has changed', async () => {
     const { document } = await lays.read(scope, lay);
     const { job } = await begin();
-    await runner.drain();
+    await firstLayOf(job);
     await save((now) => ({ ...now, strip: { ...now.strip, reserve: 50 } }));
     expect(await settleRuns.read(cast.here.owner.scope, lay)).toMatchObject({
       version: 1,
@@ -196,7 +211,7 @@ describe('the result', () => {
 
   it('becomes a lay of its own beside the changed one', async () => {
     const { job } = await begin();
-    await runner.drain();
+    await firstLayOf(job);
     await save((now) => ({ ...now, strip: { ...now.strip, reserve: 50 } }));
     const changed = await lays.read(scope, lay);
     const { id } = await settleRuns.keepAsLay(scope, lay, job, 'Settled');
@@ -256,7 +271,7 @@ describe('a run that is interrupted', () => {
 
   it('goes on from what a dead process had told, and keeps pieces of the Rail and locks apart', async () => {
     const { job: first } = await begin();
-    await runner.drain();
+    await firstLayOf(first);
     const one = await told(first);
     await save((document) => ({ ...document, placements: one.best!.placements.slice(0, 3) }));
     const { job } = await begin({ pieces: 'loose', from: 'here', budgetSeconds: 3 });

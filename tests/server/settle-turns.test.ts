@@ -78,6 +78,20 @@ it('a studio keeps the threads while nobody waits, and gives them up after a sli
   expect((progress as SettleProgress).turns).toBeGreaterThanOrEqual(1);
 });
 
+it('ends at the end of a slice when its lay is gone, and does not keep the studio from settling', async () => {
+  const search = vi.spyOn(workers, 'settleWithWorkers').mockImplementation(async (_problem, run) => {
+    await new Promise((resolve) => run.signal!.addEventListener('abort', resolve));
+    const result: SettleResult = { placements: [], length: 0, density: 0, leftOver: [], evaluations: 5 };
+    return { result, evaluations: 5, seconds: 15, refused: [] };
+  });
+  const job = await begin(cast.here);
+  await runner.fill();
+  await vi.waitFor(() => expect(search).toHaveBeenCalled());
+  await cast.db('lays').delete();
+  await vi.advanceTimersByTimeAsync(15_000);
+  await vi.waitFor(async () => expect(await stateOf(job)).toBe('done'));
+});
+
 describe('a search that errs', () => {
   it('shows nothing that breaks a rule of the lay, and leaves word of it in the log', async () => {
     const said = vi.spyOn(log, 'error').mockReturnValue(undefined);

@@ -28,7 +28,7 @@ import { openWorker } from './worker-thread';
 const SLICE_MS = 15_000;
 const MEMORY_MB = 512;
 const TELL_EVERY_MS = 1000;
-/** Positions looked at are counted from here again in each turn; the seed moves on, so that no turn repeats another. */
+/** Each turn searches with seeds of its own, so that none repeats another. */
 const SEEDS_APART = 7919;
 
 const nothingYet: SettleProgress = { seconds: 0, evaluations: 0, turns: 0, best: null, ended: null };
@@ -84,17 +84,16 @@ export const job: jobs.JobKind<Record<string, unknown>> = {
     if (run.signal.aborted) end();
     let givesWay = false;
     const started = performance.now();
-    const sliceTimer = setInterval(() => {
-      if (former.seconds + (performance.now() - started) / 1000 >= LONGEST_RUN) end();
-      void run
-        .othersWait()
-        .then((waiting) => {
-          if (!waiting) return;
-          givesWay = true;
-          end();
-        })
-        .catch((error: unknown) => log.error({ job: run.id, err: error }, 'settle'));
-    }, SLICE_MS);
+    const endOfSlice = async (): Promise<void> => {
+      if (former.seconds + (performance.now() - started) / 1000 >= LONGEST_RUN) return end();
+      if (!(await settleRuns.isWanted(run.id))) return end();
+      givesWay = await run.othersWait();
+      if (givesWay) end();
+    };
+    const sliceTimer = setInterval(
+      () => void endOfSlice().catch((error: unknown) => log.error({ job: run.id, err: error }, 'settle')),
+      SLICE_MS
+    );
 
     let ended: SettleProgress['ended'] = 'time';
     const left = Math.max(0, whole - former.seconds);

@@ -63,6 +63,8 @@ export async function create(
       .join('lays', 'lays.id', 'settle_runs.lay_id')
       .where({ 'settle_runs.studio_id': scope.studio })
       .whereIn('jobs.state', ['waiting', 'running'])
+      // One that was told to stop ends in a moment.
+      .where({ 'jobs.stop_wanted': 0 })
       .first<{ job: string; lay: string; name: string } | undefined>({
         job: 'jobs.id',
         lay: 'lays.id',
@@ -159,6 +161,11 @@ export async function inputOf(
     panels: JSON.parse(row.panels) as PanelBook,
     choice: JSON.parse(row.choice) as SettleChoice
   };
+}
+
+/** Whether anybody can still want the result: false once the lay is gone. */
+export async function isWanted(job: string): Promise<boolean> {
+  return (await database()('settle_runs').where({ job_id: job }).first('job_id')) !== undefined;
 }
 
 async function runOfLay(scope: Scope, layId: string, job: string): Promise<RunRow> {
