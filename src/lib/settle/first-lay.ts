@@ -7,7 +7,13 @@ import type { Task } from './task';
  * A lay without overlaps, made at once: the largest piece first, each to the place of least right edge on a grid of
  * cells that every outline covers generously, trying all its ways. Items whose `kept` is set stay as `lay` has them.
  */
-export function firstLay(task: Task, random: () => number, kept: Uint8Array | null, lay: Lay | null): Lay {
+export function firstLay(
+  task: Task,
+  random: () => number,
+  disorder: number,
+  kept: Uint8Array | null,
+  lay: Lay | null
+): Lay {
   const rows = Math.max(48, Math.min(480, Math.round((task.width / task.yardstick) * 14)));
   const cell = task.width / rows;
   const raster = createRaster(rows, Math.ceil(task.clearance / cell) + 2);
@@ -36,7 +42,7 @@ export function firstLay(task: Task, random: () => number, kept: Uint8Array | nu
   const rank = new Map(
     order.map((i) => {
       const form = task.forms[task.choiceForm[task.items[i]!.first]!]!;
-      return [i, 4 * form.hx * form.hy * (0.98 + 0.04 * random())];
+      return [i, 4 * form.hx * form.hy * (1 + disorder * (random() - 0.5))];
     })
   );
   order.sort((a, b) => rank.get(b)! - rank.get(a)!);

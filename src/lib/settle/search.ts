@@ -16,6 +16,12 @@ export interface Course {
   version: number;
 }
 
+/** How many near misses are remembered. */
+const POOL = 10;
+/** How often they are shaken before another length is tried. */
+const SHAKES = 200;
+/** From this share of the time on the best lay is only squeezed. */
+const SQUEEZE = 0.75;
 const EFFORT: Effort = { anywhere: 10, nearby: 6 };
 
 /**
@@ -170,6 +176,35 @@ export function* search(
     return false;
   }
 
+  /** Near misses of one length, the best first. */
+  const pool: { lay: Lay; loss: number }[] = [];
+
+  function remember(): void {
+    const lay = emptyLay(n);
+    copyLay(nearest, lay);
+    pool.push({ lay, loss: nearestLoss });
+    pool.sort((a, b) => a.loss - b.loss);
+    if (pool.length > POOL) pool.pop();
+  }
+
+  function* shake(): Generator<void, boolean, void> {
+    pool.length = 0;
+    remember();
+    for (let tries = 0; tries < SHAKES && !course.offered && course.share < SQUEEZE; tries++) {
+      // Biased towards the best.
+      const pick = pool[Math.floor(random() * random() * pool.length)]!;
+      copyLay(pick.lay, trial);
+      swapLarge(trial);
+      if (!field.load(trial)) return false;
+      if (yield* separate(3, 60)) {
+        accept();
+        return true;
+      }
+      remember();
+    }
+    return false;
+  }
+
   let step = 0.04;
   let squeeze = 0.003;
   if (n === 0) return;
@@ -179,7 +214,7 @@ export function* search(
       yield;
       continue;
     }
-    if (course.share >= 0.75) {
+    if (course.share >= SQUEEZE) {
       if (yield* shorten(squeeze, 2, 60)) continue;
       squeeze = Math.max(0.0001, squeeze * 0.7);
       if (squeeze === 0.0001) squeeze = 0.003;
@@ -199,15 +234,7 @@ export function* search(
       step = Math.max(course.floor, step * 0.6);
       continue;
     }
-    // Stuck: shake the near miss.
-    for (let tries = 0; tries < 3 && !course.offered && course.share < 0.75; tries++) {
-      copyLay(nearest, trial);
-      swapLarge(trial);
-      if (!field.load(trial)) break;
-      if (yield* separate(2, 60)) {
-        accept();
-        break;
-      }
-    }
+    // Stuck: shake the near misses of this length until one comes apart.
+    yield* shake();
   }
 }

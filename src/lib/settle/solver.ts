@@ -117,7 +117,7 @@ function closed(task: Task, course: Course): boolean {
 
 /** Where the search starts: the lay that it is given, completed, or a first lay made at once. */
 function beginning(problem: SettleProblem, task: Task, field: Field, random: () => number): Lay {
-  if (problem.start.length === 0) return firstLay(task, random, null, null);
+  if (problem.start.length === 0) return firstLay(task, random, 0.04, null, null);
   const n = task.items.length;
   const lay = emptyLay(n);
   const kept = new Uint8Array(n);
@@ -136,7 +136,7 @@ function beginning(problem: SettleProblem, task: Task, field: Field, random: () 
   for (;;) {
     const trial = emptyLay(n);
     copyLay(lay, trial);
-    firstLay(task, random, kept, trial);
+    firstLay(task, random, 0.04, kept, trial);
     field.load(trial);
     let worst = -1;
     for (let i = 0; i < n; i++)
@@ -167,7 +167,7 @@ function cutDown(task: Task, lay: Lay, limit: number): Uint8Array {
   const kept = new Uint8Array(n);
   const end = (i: number) => lay.x[i]! + task.forms[task.choiceForm[lay.choice[i]!]!]!.hx;
   for (let i = 0; i < n; i++) kept[i] = end(i) <= limit + 1 ? 1 : 0;
-  firstLay(task, () => 0.5, kept, lay);
+  firstLay(task, () => 0.5, 0, kept, lay);
   let length = task.lockedTo;
   for (let i = 0; i < n; i++) {
     kept[i] = end(i) <= limit + 1 ? 1 : 0;
