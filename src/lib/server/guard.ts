@@ -17,7 +17,11 @@ export function allow(event: Pick<RequestEvent, 'locals' | 'url'>, permission: P
   signedIn(event);
   const { scope } = event.locals;
   if (!scope) redirect(303, '/studios');
-  if (!may(scope.role, permission)) error(403, 'Your role in this studio does not include this.');
+  if (!may(scope.role, permission))
+    error(403, {
+      message: 'Your role in this studio does not include this.',
+      requestId: event.locals.requestId
+    });
   return scope;
 }
 
