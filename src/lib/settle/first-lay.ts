@@ -1,5 +1,5 @@
 import { inflated } from './form';
-import { emptyLay, type Lay } from './field';
+import { emptyLay, type Lay } from './laid';
 import { createRaster, runsOf, type Runs } from './raster';
 import type { Task } from './task';
 

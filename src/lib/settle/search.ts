@@ -1,4 +1,5 @@
-import { copyLay, emptyLay, type Effort, type Field, type Lay } from './field';
+import type { Effort, Field } from './field';
+import { copyLay, emptyLay, type Lay } from './laid';
 import { shuffle } from './random';
 import type { Task } from './task';
 
@@ -62,9 +63,9 @@ export function* search(
   /** One pass: each overlapping item, in random order, to the best place found for it. */
   function pass(): void {
     let count = 0;
-    for (let i = 0; i < n; i++) if (field.overlaps[i]! > 0) order[count++] = i;
+    for (let i = 0; i < n; i++) if (field.pairs.overlaps[i]! > 0) order[count++] = i;
     shuffle(order, count, random);
-    for (let k = 0; k < count; k++) if (field.overlaps[order[k]!]! > 0) field.move(order[k]!, EFFORT);
+    for (let k = 0; k < count; k++) if (field.pairs.overlaps[order[k]!]! > 0) field.move(order[k]!, EFFORT);
   }
 
   /**
@@ -72,8 +73,8 @@ export function* search(
    */
   function* separate(strikes: number, patience: number): Generator<void, boolean, void> {
     const target = field.length();
-    field.resetWeights();
-    nearestLoss = field.totalLoss();
+    field.pairs.resetWeights();
+    nearestLoss = field.pairs.totalLoss();
     field.save(nearest);
     let struck = 0;
     for (;;) {
@@ -82,10 +83,10 @@ export function* search(
       while (idle < patience) {
         pass();
         yield;
-        if (field.pairs() === 0) return true;
+        if (field.pairs.count() === 0) return true;
         if (course.offered && course.offered.length <= target) return false;
-        field.reweigh();
-        const loss = field.totalLoss();
+        field.pairs.reweigh();
+        const loss = field.pairs.totalLoss();
         if (loss < nearestLoss * 0.98) {
           idle = 0;
           improved = true;
@@ -115,7 +116,7 @@ export function* search(
   function* repair(): Generator<void, boolean, void> {
     for (const factor of [1.5, 3, 6]) {
       field.load(nearest);
-      const { i, j, loss } = field.worstPair();
+      const { i, j, loss } = field.pairs.worstPair();
       if (i < 0) return false;
       const depth = (loss * task.yardstick) / Math.sqrt(pieceSize(i) * (j < n ? pieceSize(j) : 1));
       const length = nearest.length + factor * depth;

@@ -1,6 +1,7 @@
 import { placeOutline } from '$lib/geometry/placement';
-import { createField, copyLay, emptyLay, type Field, type Lay } from './field';
+import { createField, type Field } from './field';
 import { firstLay } from './first-lay';
+import { copyLay, emptyLay, type Lay } from './laid';
 import { createStore } from './no-fit-store';
 import type { SettlePlacement, SettleProblem, SettleResult } from './problem';
 import { randomFrom } from './random';
@@ -142,8 +143,8 @@ function beginning(problem: SettleProblem, task: Task, field: Field, random: () 
     for (let i = 0; i < n; i++)
       if (
         kept[i] &&
-        field.deepest(i) > touching &&
-        (worst < 0 || field.overlaps[i]! > field.overlaps[worst]!)
+        field.pairs.deepest(i) * task.yardstick > touching &&
+        (worst < 0 || field.pairs.overlaps[i]! > field.pairs.overlaps[worst]!)
       )
         worst = i;
     if (worst < 0) return trial;
