@@ -80,11 +80,11 @@ export function joinCorner(a: Chain, b: Chain, join: CornerJoin): Point[] {
     case 'blunt':
       return [];
     case 'square':
-      return square(a, b, corner, join.edge === 'before') ?? mitred(a, b, corner);
+      return square(a, b, corner, join.edge === 'before') ?? mitred(a, b, corner, 0);
     case 'mirrored':
-      return mirrored(a, b, corner, join.edge === 'before') ?? mitred(a, b, corner);
+      return mirrored(a, b, corner, join.edge === 'before') ?? mitred(a, b, corner, 0);
     case 'mitred':
-      return mitred(a, b, corner);
+      return mitred(a, b, corner, Math.max(Math.abs(wa), Math.abs(wb)));
   }
 }
 
@@ -98,6 +98,11 @@ function inward(a: Chain, b: Chain, corner: Point): Point[] {
   const mild = dot(a.end, b.start) > -0.01 && a !== b;
   const hit = mild && c && f ? meet(c, d, e, f) : null;
   if (!hit || hit.first < 0.5 || hit.second > 0.5) return [corner];
+  // The end of each strip must lie within the other one: a short edge beside a wide strip does not cover it.
+  const sine = Math.abs(cross(a.end, b.start));
+  const covers = (p: Point, q: Point, width: Millimetres) =>
+    Math.hypot(q.x - p.x, q.y - p.y) >= Math.abs(width) * sine;
+  if (!covers(c!, d, b.distance) || !covers(e, f!, a.distance)) return [corner];
   setEnd(a, hit.at);
   setStart(b, hit.at);
   return [];
@@ -106,7 +111,12 @@ function inward(a: Chain, b: Chain, corner: Point): Point[] {
 const setEnd = (chain: Chain, to: Point): void => void (chain.line[chain.line.length - 1] = to);
 const setStart = (chain: Chain, to: Point): void => void (chain.line[0] = to);
 
-function mitred(a: Chain, b: Chain, corner: Point): Point[] {
+/**
+ * Both lines run on until they meet. Where the narrower one meets the wider one beside its own edge, that takes the end of the
+ * wider strip: `takes` is how much of its length may go. Beyond that there is a step, so that a shallow corner between two
+ * different allowances never thins the wider one along its edge.
+ */
+function mitred(a: Chain, b: Chain, corner: Point, takes: Millimetres): Point[] {
   const [wa, wb] = [a.distance, b.distance];
   const most = REACH * Math.max(Math.abs(wa), Math.abs(wb));
   const sine = cross(a.end, b.start);
@@ -124,12 +134,12 @@ function mitred(a: Chain, b: Chain, corner: Point): Point[] {
     setStart(b, tip);
     return [];
   }
-  if (reach <= most) {
+  if (reach <= most && Math.max(-ahead, -behind) <= takes) {
     // The narrower line, run on, meets the wider one beside its own edge.
     if (ahead < 0 && cutEnd(a.line, startOfB, along(startOfB, b.start, -most))) return [];
     if (behind < 0 && cutStart(b.line, endOfA, along(endOfA, a.end, most))) return [];
   }
-  // Too far away: the wider strip ends square to its own edge, and the narrower one runs up to it.
+  // Too far away or too costly: the wider strip ends square to its own edge, and the narrower one runs up to it.
   return Math.abs(wa) > Math.abs(wb)
     ? [along(corner, outward(a.end), wb / cosine)]
     : [along(corner, outward(b.start), wa / cosine)];

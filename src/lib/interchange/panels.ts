@@ -84,6 +84,7 @@ const FAULT_FIELDS: Partial<Record<PanelFaultKind, keyof PanelChoice>> = {
   'fold-crossed': 'fold',
   'allowance-closes-bay': 'allowance',
   'allowance-eats-panel': 'allowance',
+  'allowance-lost': 'allowance',
   'cut-out-unclosed': 'inner',
   'cut-out-crosses-itself': 'inner',
   'cut-out-outside': 'inner'

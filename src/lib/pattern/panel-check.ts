@@ -157,6 +157,24 @@ function cutOutFindings(panel: Panel, outline: Outline): PanelFinding[] {
   });
 }
 
+/** A cut line that falls short of an allowance by more than this has lost it; rounding to the grid stays far below. */
+const LOST = 0.01;
+
+/** For each straight run of an edge its start, and the place beside its middle at the edge's allowance. */
+function middlesBeside({ points, allowance }: FlatEdge): { a: Point; p: Point }[] {
+  return points.slice(1).map((b, i) => {
+    const a = points[i]!;
+    const length = Math.hypot(b.x - a.x, b.y - a.y);
+    return {
+      a,
+      p: {
+        x: (a.x + b.x) / 2 + ((b.y - a.y) / length) * allowance,
+        y: (a.y + b.y) / 2 - ((b.x - a.x) / length) * allowance
+      }
+    };
+  });
+}
+
 function allowanceFindings(panel: Panel, edges: readonly FlatEdge[]): PanelFinding[] {
   if (edges.every(({ allowance }) => allowance === 0)) return [];
   if (panel.drawn === 'cut') {
@@ -164,14 +182,27 @@ function allowanceFindings(panel: Panel, edges: readonly FlatEdge[]): PanelFindi
     return [stop('allowance-eats-panel', null, 'The allowances leave no sew line inside this cut line.')];
   }
   const cut = cutLine(edges);
-  return edges.flatMap((edge): PanelFinding[] => {
-    const closed = edge.points.slice(1).flatMap((b, i) => {
-      const a = edge.points[i]!;
-      const length = Math.hypot(b.x - a.x, b.y - a.y);
-      const p = {
-        x: (a.x + b.x) / 2 + ((b.y - a.y) / length) * edge.allowance,
-        y: (a.y + b.y) / 2 - ((b.x - a.x) / length) * edge.allowance
-      };
+  return edges.flatMap((edge, e): PanelFinding[] => {
+    const middles = middlesBeside(edge);
+    // Square and blunt corners only add to the strips; a strip that is not all inside has been lost.
+    const onlyAdds = [edge, edges[(e + 1) % edges.length]!].every(
+      ({ treatment }) => treatment === 'square' || treatment === 'blunt'
+    );
+    const lost = onlyAdds
+      ? middles
+          .filter(({ p }) => locate(cut, p) === 'outside')
+          .map(({ a, p }) => ({ a, short: distanceToOutline(cut, p) }))
+          .reduce((most, one) => (one.short > most.short ? one : most), { a: edge.points[0]!, short: 0 })
+      : null;
+    if (lost && lost.short > LOST)
+      return [
+        stop(
+          'allowance-lost',
+          lost.a,
+          `The allowance of edge ${edge.id} (${mm(edge.allowance)}) can't be drawn here beside those of its neighbours: ${mm(lost.short)} of it would be missing. Make it smaller or choose mitred corners.`
+        )
+      ];
+    const closed = middles.flatMap(({ a, p }) => {
       // The middle of the allowance's own line lies deep in the piece: another allowance runs over it.
       return locate(cut, p) === 'inside' && distanceToOutline(cut, p) > Math.max(1, edge.allowance / 4)
         ? [a]

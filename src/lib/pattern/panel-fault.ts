@@ -12,6 +12,7 @@ export const panelFaultKinds = [
   'fold-crossed',
   'allowance-closes-bay',
   'allowance-eats-panel',
+  'allowance-lost',
   'cut-out-unclosed',
   'cut-out-crosses-itself',
   'cut-out-outside',

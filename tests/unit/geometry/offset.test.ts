@@ -182,7 +182,7 @@ describe('a line beside an outline', () => {
         fc.constantFrom<CornerJoin['kind']>('mitred', 'square', 'mirrored', 'blunt'),
         (outline, seed, kind) => {
           const random = randomFrom(seed);
-          const distances = outline.map(() => [0, 5, 10, 15, 40][Math.floor(random() * 5)]!);
+          const distances = outline.map(() => [0, 5, 10, 15, 25, 40][Math.floor(random() * 6)]!);
           const corners = outline.map((): CornerJoin =>
             kind === 'mitred' || kind === 'blunt'
               ? { kind }
@@ -212,6 +212,25 @@ describe('a line beside an outline', () => {
       ),
       { seed: 71, numRuns: runs(400) }
     );
+  });
+
+  it('never thins the wider allowance along a shallow corner between two different ones', () => {
+    // 12° at the corner, 10 mm beside 5 mm: run on, the narrow line would meet the wide one 23 mm along its edge.
+    const radians = (12 * Math.PI) / 180;
+    const far = { x: 100 + 100 * Math.cos(radians), y: 100 * Math.sin(radians) };
+    const outline = [...points([0, 0], [100, 0]), far, ...points([100, 200], [0, 200])];
+    for (const kind of ['square', 'mitred', 'blunt'] as const)
+      for (const edge of ['before', 'after'] as const) {
+        const corner: CornerJoin = kind === 'square' ? { kind, edge } : { kind };
+        const cut = offsetOutline(
+          straight(
+            outline,
+            outline.map((_, i) => (i === 0 ? 10 : 5)),
+            outline.map(() => corner)
+          )
+        )!;
+        for (const x of [10, 50, 80, 95]) expect(locate(cut, { x, y: -9.999 })).toBe('inside');
+      }
   });
 
   it('says the same of a flipped outline', () => {

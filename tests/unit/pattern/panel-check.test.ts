@@ -1,6 +1,8 @@
 import { describe, expect, it } from 'vitest';
+import { area } from '$lib/geometry/polygon';
 import { panelFindings } from '$lib/pattern/panel-check';
 import type { Panel } from '$lib/pattern/panel';
+import { resolvePanel } from '$lib/pattern/resolve';
 import { box, points } from '../geometry/outlines';
 import { straightPanel } from './panels';
 
@@ -45,6 +47,37 @@ describe('what is wrong with a panel', () => {
       'allowance-closes-bay warns',
       'allowance-closes-bay warns'
     ]);
+  });
+
+  it('is an allowance so wide for its short edge that the cut line would lose it: told, never dropped', () => {
+    const outline = points(
+      ...([
+        [24.33, 7.837],
+        [14.398, 11.195],
+        [6.076, 10.609],
+        [1.095, 12.401],
+        [-5.633, 8.644],
+        [-20.302, 9.704],
+        [-12.685, 1.271],
+        [-9.431, -5.882],
+        [-6.598, -6.215],
+        [-2.119, -9.513],
+        [2.737, -7.406],
+        [7.205, -8.399],
+        [18.369, -7.365]
+      ] as [number, number][])
+    );
+    const panel = straightPanel(outline, { allowances: [0, 40, 0, 10, 15, 5, 40, 0, 40, 5, 15, 40, 15] });
+    const square = {
+      ...panel,
+      corners: panel.corners.map((one) => ({ ...one, treatment: 'square' as const }))
+    };
+    const held = panelFindings(square).every(({ kind }) => kind !== 'allowance-lost');
+    // Where every strip is there, nothing is said; where one is not, release is out of the question.
+    if (held) {
+      const { cut } = resolvePanel(square);
+      expect(area(cut)).toBeGreaterThan(area(outline) + 8 * 40);
+    } else expect(() => resolvePanel(square)).toThrow(/would be missing/);
   });
 
   it('says how far a fold leaves the straight line, and where', () => {
