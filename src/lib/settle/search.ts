@@ -1,6 +1,7 @@
 import type { Effort, Field } from './field';
 import { copyLay, emptyLay, type Lay } from './laid';
 import { shuffle } from './random';
+import { createShake } from './shake';
 import type { Task } from './task';
 
 /** What the outside tells the search while it runs, and reads from it. */
@@ -42,6 +43,7 @@ export function* search(
   const order = new Int32Array(n);
   const trial = emptyLay(n);
   const nearest = emptyLay(n);
+  const disturb = createShake(task, random);
   let nearestLoss = Infinity;
 
   function accept(): void {
@@ -138,31 +140,6 @@ export function* search(
   const pieceSize = (i: number) =>
     Math.sqrt(task.forms[task.choiceForm[task.items[i]!.first]!]!.area) / task.yardstick;
 
-  /** Swaps the places of two large pieces of `lay`. */
-  function swapLarge(lay: Lay): void {
-    const large = bySize.slice(0, Math.max(2, Math.ceil(n * 0.4)));
-    for (let tries = 0; tries < 20; tries++) {
-      const a = large[Math.floor(random() * large.length)]!;
-      const b = large[Math.floor(random() * large.length)]!;
-      if (a === b || task.choiceForm[lay.choice[a]!] === task.choiceForm[lay.choice[b]!]) continue;
-      for (const [i, j] of [
-        [a, b],
-        [b, a]
-      ] as const) {
-        swapX[i] = lay.x[j]!;
-        swapY[i] = lay.y[j]!;
-      }
-      for (const i of [a, b]) {
-        lay.x[i] = swapX[i]!;
-        lay.y[i] = swapY[i]!;
-      }
-      return;
-    }
-  }
-  const swapX = new Float64Array(n);
-  const swapY = new Float64Array(n);
-  const bySize = Array.from({ length: n }, (_, i) => i).sort((a, b) => pieceSize(b) - pieceSize(a));
-
   /** One attempt at a lay shorter by `step`; true if the best got better. */
   function* shorten(step: number, strikes: number, patience: number): Generator<void, boolean, void> {
     const length = Math.max(task.least, course.best.length * (1 - step));
@@ -188,20 +165,22 @@ export function* search(
     if (pool.length > POOL) pool.pop();
   }
 
-  function* shake(): Generator<void, boolean, void> {
+  function* shakeApart(): Generator<void, boolean, void> {
     pool.length = 0;
     remember();
     for (let tries = 0; tries < SHAKES && !course.offered && course.share < SQUEEZE; tries++) {
       // Biased towards the best.
       const pick = pool[Math.floor(random() * random() * pool.length)]!;
       copyLay(pick.lay, trial);
-      swapLarge(trial);
+      disturb(trial);
       if (!field.load(trial)) return false;
       if (yield* separate(3, 60)) {
         accept();
         return true;
       }
+      const closest = nearestLoss < pool[0]!.loss;
       remember();
+      if (closest && !course.offered && (yield* repair())) return true;
     }
     return false;
   }
@@ -236,6 +215,6 @@ export function* search(
       continue;
     }
     // Stuck: shake the near misses of this length until one comes apart.
-    yield* shake();
+    yield* shakeApart();
   }
 }
