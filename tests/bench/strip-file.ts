@@ -31,6 +31,7 @@ export function stripProblem(strip: StripFile): SettleProblem {
       tilt: 0,
       napGroup: null,
       onFold: false,
+      band: null,
       lattice: null
     })),
     locked: [],

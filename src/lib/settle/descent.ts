@@ -12,7 +12,7 @@ const STEPS = 8;
 export type Descent = ReturnType<typeof createDescent>;
 
 export function createDescent(task: Task, laid: Laid, nearby: Nearby) {
-  const { choiceForm, sizeX, sizeY, phaseX, phaseY, onFold, yardstick } = task;
+  const { choiceForm, sizeX, sizeY, phaseX, phaseY, low, high, yardstick } = task;
   const { halfX, halfY } = laid;
   /** Where the centre of a piece may be: left, low, right, high. */
   const box = new Float64Array(4);
@@ -24,9 +24,9 @@ export function createDescent(task: Task, laid: Laid, nearby: Nearby) {
   function boxOf(c: number, length: number): boolean {
     const f = choiceForm[c]!;
     box[0] = halfX[f]!;
-    box[1] = halfY[f]!;
+    box[1] = low[c]!;
     box[2] = length - halfX[f]!;
-    box[3] = onFold[c] ? halfY[f]! : task.width - halfY[f]!;
+    box[3] = high[c]!;
     return box[2]! >= box[0]!;
   }
 

@@ -56,7 +56,7 @@ export function firstLay(
     let bestRow = 0;
     for (let c = first; c < last; c++) {
       const shape = shapeOf(c);
-      const key = c * 2 + task.onFold[c]!;
+      const key = c;
       for (let column = tried.get(key) ?? 0; column * cell + shape.width < best; column++) {
         if (
           !onGrid(task.phaseX[c]!, task.sizeX[c]!, column * cell + task.forms[task.choiceForm[c]!]!.hx, cell)
@@ -78,8 +78,12 @@ export function firstLay(
     result.choice[i] = bestChoice;
     result.x[i] = snapped(bestColumn * cell + form.hx, task.phaseX[bestChoice]!, task.sizeX[bestChoice]!);
     result.y[i] = Math.min(
-      snapped(bestRow * cell + form.hy, task.phaseY[bestChoice]!, task.sizeY[bestChoice]!),
-      task.width - form.hy
+      snapped(
+        Math.max(bestRow * cell + form.hy, task.low[bestChoice]!),
+        task.phaseY[bestChoice]!,
+        task.sizeY[bestChoice]!
+      ),
+      task.high[bestChoice]!
     );
     length = Math.max(length, result.x[i]! + form.hx);
   }
@@ -142,17 +146,28 @@ function freeRow(
   cell: number
 ): number {
   const size = task.sizeY[choice]!;
-  if (size === 0) return raster.freeRow(shape.asks, shape.height, column, task.onFold[choice] === 1);
-  // The few rows that a line of the lattice falls into, each by itself.
   const { hy } = task.forms[task.choiceForm[choice]!]!;
-  for (let y = snapped(hy, task.phaseY[choice]!, size); y <= task.width - hy; y += size) {
+  const low = task.low[choice]!;
+  const high = task.high[choice]!;
+  if (size === 0) {
+    const least = Math.ceil((low - hy) / cell - 1e-6);
+    const most = Math.floor((high - hy) / cell + 1e-6);
+    return raster.freeRow(
+      shape.asks,
+      column,
+      least,
+      Math.max(least, Math.min(most, raster.rows - shape.height))
+    );
+  }
+  // The few rows that a line of the lattice falls into, each by itself.
+  for (let y = snapped(low, task.phaseY[choice]!, size); y <= high; y += size) {
     const row = Math.floor((y - hy) / cell + 1e-9);
     const moved = shape.asks.slice();
     for (let k = 0; k < moved.length; k += 3) {
       moved[k + 1]! += row;
       moved[k + 2]! += row;
     }
-    if (raster.freeRow(moved, 1, column, true) === 0) return row;
+    if (raster.freeRow(moved, column, 0, 0) === 0) return row;
   }
   return -1;
 }

@@ -168,6 +168,7 @@ function pieceOf(
     tilt: tilts ? panel.grainTolerance : 0,
     napGroup: strip.nap === 'garmentWay' ? garment : null,
     onFold: false,
+    band: null,
     lattice
   };
 }
@@ -192,7 +193,7 @@ function latticeOf(document: LayDocument, panel: LayPanel, garment: string): Lat
     for (const one of group.points) {
       if (one.garment !== garment || one.panel !== panel.shape.panel) continue;
       const point = panel.shape.matchPoints.find(({ id }) => id === one.point);
-      if (point) return { anchor: point.at, x: line(along), y: line(across) };
+      if (point) return { anchor: point.at, x: line(along), y: line(across), group: null };
     }
   return null;
 }

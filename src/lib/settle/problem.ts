@@ -14,12 +14,24 @@ export interface Way {
   readonly nap: 1 | -1 | 0;
 }
 
-/** Where a line of the cloth's repeat may take a piece: its anchor falls on `at` + a whole number of `size`. */
+/**
+ * Where a line of the cloth's repeat may take a piece: its anchor falls on `at` + a whole number of `size`. The lattices
+ * of one group may all be moved alike: where they lie in the repeat is the search's to choose, but it is one place for
+ * all of them.
+ */
 export interface Lattice {
   /** A point of the piece, in its own coordinates. */
   readonly anchor: Point;
   readonly x: { readonly size: Millimetres; readonly at: Millimetres } | null;
   readonly y: { readonly size: Millimetres; readonly at: Millimetres } | null;
+  /** null: the lines lie where `at` says. */
+  readonly group: string | null;
+}
+
+/** A stretch of the width. */
+export interface Band {
+  readonly from: Millimetres;
+  readonly to: Millimetres;
 }
 
 export interface SettlePiece {
@@ -37,6 +49,8 @@ export interface SettlePiece {
   readonly napGroup: string | null;
   /** Whether its lowest edge lies on y = 0, the fold. */
   readonly onFold: boolean;
+  /** The stretch of the width in which it lies: the doubled cloth, say; null: anywhere. */
+  readonly band: Band | null;
   readonly lattice: Lattice | null;
 }
 

@@ -78,11 +78,8 @@ function spansIn(xs: Float64Array, ys: Float64Array, c: number): [number, number
 export interface Raster {
   readonly rows: number;
   occupy(runs: Runs, column: number, row: number): void;
-  /**
-   * The lowest row at which `runs`, `height` rows in all, is free with its first column at `column`; −1 if there is
-   * none. With `lowestOnly` only row 0 is asked.
-   */
-  freeRow(runs: Runs, height: number, column: number, lowestOnly: boolean): number;
+  /** The lowest row from `least` to `most` at which `runs` is free with its first column at `column`; −1 if there is none. */
+  freeRow(runs: Runs, column: number, least: number, most: number): number;
 }
 
 /** @param pad rows below and above the cloth that runs may reach into */
@@ -131,13 +128,16 @@ export function createRaster(rows: number, pad: number): Raster {
     }
   }
 
-  function freeRow(runs: Runs, height: number, column: number, lowestOnly: boolean): number {
-    const most = lowestOnly ? 0 : rows - height;
-    if (most < 0) return -1;
+  function freeRow(runs: Runs, column: number, least: number, most: number): number {
+    if (most < least || least < 0) return -1;
     const used = (most >> 5) + 1;
     blocked.fill(0);
+    // Rows below the lowest possible one count as blocked too.
+    for (let w = 0; w < least >> 5; w++) blocked[w] = -1;
+    const lowest = (1 << (least & 31)) - 1;
     // Rows above the highest possible one count as blocked.
-    blocked[used - 1] = (most & 31) === 31 ? 0 : -1 << ((most & 31) + 1);
+    blocked[used - 1]! |= (most & 31) === 31 ? 0 : -1 << ((most & 31) + 1);
+    blocked[least >> 5]! |= lowest;
     for (let k = 0; k < runs.length; k += 3) {
       const c = runs[k]! + column;
       if (c < 0 || c >= columns) continue;

@@ -153,12 +153,9 @@ function beginning(problem: SettleProblem, task: Task, field: Field, random: () 
 }
 
 function insideOf(task: Task, place: { choice: number; x: number; y: number }): boolean {
-  const { hx, hy } = task.forms[task.choiceForm[place.choice]!]!;
+  const { hx } = task.forms[task.choiceForm[place.choice]!]!;
   return (
-    place.x >= hx - 1 &&
-    place.y >= hy - 1 &&
-    place.y <= task.width - hy + 1 &&
-    (!task.onFold[place.choice] || place.y <= hy + 1)
+    place.x >= hx - 1 && place.y >= task.low[place.choice]! - 1 && place.y <= task.high[place.choice]! + 1
   );
 }
 

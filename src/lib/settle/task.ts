@@ -1,5 +1,5 @@
-import type { Outline } from '$lib/geometry/point';
-import { cosSin, snapTurn } from '$lib/geometry/placement';
+import { snap, type Outline } from '$lib/geometry/point';
+import { cosSin, place, snapTurn } from '$lib/geometry/placement';
 import { centredRing, formOf, ringKey, type Form } from './form';
 import type { SettlePiece, SettlePlacement, SettleProblem, Way } from './problem';
 import { extent, surroundings } from './remnant';
@@ -60,14 +60,17 @@ export interface Task {
   readonly phaseY: Float64Array;
   readonly sizeX: Float64Array;
   readonly sizeY: Float64Array;
-  /** 1 where the piece lies on y = 0. */
-  readonly onFold: Uint8Array;
+  /** How low and how high the centre may lie; both the same for a piece on the fold. */
+  readonly low: Float64Array;
+  readonly high: Float64Array;
   /** The mean of √area: the yardstick of the search. */
   readonly yardstick: number;
   readonly area: number;
 }
 
 const MOST = 1.6e7;
+/** Rounding of a product of two decimals, in quanta. */
+const HAIR = 1e-6;
 
 /** The problem as a task. `random` deals the nap of groups that may lie either way. */
 export function taskOf(problem: SettleProblem, random: () => number): Task {
@@ -100,9 +103,11 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
     phaseY: [] as number[],
     sizeX: [] as number[],
     sizeY: [] as number[],
-    onFold: [] as number[]
+    low: [] as number[],
+    high: [] as number[]
   };
   const grouped = napsOfStart(problem);
+  const phases = phasesOf(problem, random);
   const coarse = coarseness(problem);
   let area = 0;
   let roots = 0;
@@ -122,7 +127,11 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
       if (!centred) continue;
       const form = formNumber(centred.ring, true);
       const { hx, hy } = forms[form]!;
-      if (2 * hy > width || (limit !== null && 2 * hx > limit)) continue;
+      const low = hy + (piece.band ? Math.ceil(piece.band.from * scale - HAIR) : 0);
+      const high = piece.onFold
+        ? low
+        : (piece.band ? Math.min(width, Math.floor(piece.band.to * scale + HAIR)) : width) - hy;
+      if (low > high || low + hy > width || (limit !== null && 2 * hx > limit)) continue;
       const alike = seen.get(form);
       if (alike !== undefined && !piece.lattice) {
         looks.push({ way, choice: alike, x: centred.cx, y: centred.cy });
@@ -135,15 +144,21 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
       choice.way.push(way);
       choice.x.push(centred.cx);
       choice.y.push(centred.cy);
-      choice.onFold.push(piece.onFold ? 1 : 0);
+      choice.low.push(low);
+      choice.high.push(high);
       const { lattice } = piece;
+      const moved = lattice?.group ? phases.get(lattice.group)! : { x: 0, y: 0 };
       const [cos, sin] = cosSin(way.turn);
       const ay = lattice ? (way.flip ? -lattice.anchor.y : lattice.anchor.y) : 0;
       const ax = lattice ? lattice.anchor.x : 0;
       choice.sizeX.push(lattice?.x ? lattice.x.size * scale : 0);
       choice.sizeY.push(lattice?.y ? lattice.y.size * scale : 0);
-      choice.phaseX.push(lattice?.x ? (lattice.x.at - (ax * cos - ay * sin)) * scale + centred.cx : 0);
-      choice.phaseY.push(lattice?.y ? (lattice.y.at - (ax * sin + ay * cos)) * scale + centred.cy : 0);
+      choice.phaseX.push(
+        lattice?.x ? (lattice.x.at + moved.x - (ax * cos - ay * sin)) * scale + centred.cx : 0
+      );
+      choice.phaseY.push(
+        lattice?.y ? (lattice.y.at + moved.y - (ax * sin + ay * cos)) * scale + centred.cy : 0
+      );
     }
     const last = choice.form.length;
     if (last === first) {
@@ -193,7 +208,8 @@ export function taskOf(problem: SettleProblem, random: () => number): Task {
     phaseY: Float64Array.from(choice.phaseY),
     sizeX: Float64Array.from(choice.sizeX),
     sizeY: Float64Array.from(choice.sizeY),
-    onFold: Uint8Array.from(choice.onFold),
+    low: Float64Array.from(choice.low),
+    high: Float64Array.from(choice.high),
     yardstick: items.length ? roots / items.length : width,
     area: area + lockedArea
   };
@@ -250,6 +266,36 @@ function waysOf(
     if (near) tilted.push({ ...near, turn });
   }
   return tilted;
+}
+
+/**
+ * How far each group of lattices is moved: so that a piece that lies already stays where it is, else dealt.
+ */
+function phasesOf(problem: SettleProblem, random: () => number): Map<string, { x: number; y: number }> {
+  const phases = new Map<string, { x: number; y: number }>();
+  const pieces = new Map(problem.pieces.map((piece) => [piece.id, piece]));
+  for (const placement of problem.start) {
+    const lattice = pieces.get(placement.piece)?.lattice;
+    if (!lattice?.group || phases.has(lattice.group)) continue;
+    const anchor = place(lattice.anchor, placement);
+    phases.set(lattice.group, {
+      x: lattice.x ? anchor.x - lattice.x.at : 0,
+      y: lattice.y ? anchor.y - lattice.y.at : 0
+    });
+  }
+  for (const { lattice, onFold, outline } of problem.pieces) {
+    if (!lattice?.group) continue;
+    const known = phases.get(lattice.group);
+    // A piece on the fold has no choice across.
+    const folded =
+      onFold && lattice.y ? lattice.anchor.y - Math.min(...outline.map((p) => p.y)) - lattice.y.at : null;
+    if (known && folded === null) continue;
+    phases.set(lattice.group, {
+      x: known?.x ?? snap(random() * (lattice.x?.size ?? 0)),
+      y: folded ?? snap(random() * (lattice.y?.size ?? 0))
+    });
+  }
+  return phases;
 }
 
 /** How the groups run whose pieces lie already. */

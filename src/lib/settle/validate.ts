@@ -12,6 +12,7 @@ export interface Breach {
     | 'keep-out'
     | 'way'
     | 'fold'
+    | 'band'
     | 'lattice'
     | 'nap'
     | 'copies'
@@ -31,6 +32,7 @@ export function validate(problem: SettleProblem, result: SettleResult): Breach[]
   const seen = new Set<string>();
   const placed: Placed[] = [];
   const naps = new Map<string, number>();
+  const lattices = new Map<string, { x: number; y: number }>();
   let furthest = 0;
   for (const placement of result.placements) {
     const piece = pieces.get(placement.piece);
@@ -58,11 +60,23 @@ export function validate(problem: SettleProblem, result: SettleResult): Breach[]
     const low = Math.min(...outline.map((p) => p.y));
     if (piece.onFold && Math.abs(low) > tolerance)
       breaches.push({ rule: 'fold', pieces: [name], measure: low });
+    if (piece.band) {
+      const high = Math.max(...outline.map((p) => p.y));
+      const out = Math.max(piece.band.from - low, high - piece.band.to);
+      if (out > tolerance) breaches.push({ rule: 'band', pieces: [name], measure: out });
+    }
     if (piece.lattice) {
+      const { group } = piece.lattice;
       const [anchor] = placeOutline([piece.lattice.anchor], placement);
+      // The first piece of a group says where the lines of the others are.
+      const from = (group === null ? { x: 0, y: 0 } : lattices.get(group)) ?? {
+        x: anchor!.x - (piece.lattice.x?.at ?? 0),
+        y: anchor!.y - (piece.lattice.y?.at ?? 0)
+      };
+      if (group !== null) lattices.set(group, from);
       for (const [v, line] of [
-        [anchor!.x, piece.lattice.x],
-        [anchor!.y, piece.lattice.y]
+        [anchor!.x - from.x, piece.lattice.x],
+        [anchor!.y - from.y, piece.lattice.y]
       ] as const) {
         if (!line) continue;
         const miss = Math.abs(v - line.at - Math.round((v - line.at) / line.size) * line.size);

@@ -26,6 +26,7 @@ export function piece(id: string, outline: Outline, changes: Partial<SettlePiece
     tilt: 0,
     napGroup: null,
     onFold: false,
+    band: null,
     lattice: null,
     ...changes
   };
@@ -66,7 +67,10 @@ export function oddProblem(seed: number): SettleProblem {
   const latticed = pick(0.25);
   const lattice = { x: pick(0.7) ? 70 : 0, y: pick(0.4) ? 90 : 0 };
   const grouped = pick(0.25);
+  const matched = latticed && pick(0.5);
+  const banded = pick(0.2);
   const tilted = !latticed && pick(0.25);
+  const width = 600 + Math.round(random() * 600);
   const pieces: SettlePiece[] = [];
   const kinds = 1 + Math.floor(random() * 6);
   for (let k = 0; k < kinds; k++) {
@@ -85,18 +89,24 @@ export function oddProblem(seed: number): SettleProblem {
         tilt: tilted && pick(0.6) ? 1 + 3 * random() : 0,
         napGroup: grouped && pick(0.7) ? `g${k % 2}` : null,
         onFold: !latticed && pick(0.08),
+        band:
+          banded && pick(0.5)
+            ? pick(0.5)
+              ? { from: 0, to: 0.6 * width }
+              : { from: 0.4 * width, to: width }
+            : null,
         lattice:
           latticed && pick(0.6)
             ? {
                 anchor: outline[0]!,
                 x: lattice.x ? { size: lattice.x, at: 10 } : null,
-                y: lattice.y ? { size: lattice.y, at: 5 } : null
+                y: lattice.y ? { size: lattice.y, at: 5 } : null,
+                group: matched ? `m${k % 2}` : null
               }
             : null
       })
     );
   }
-  const width = 600 + Math.round(random() * 600);
   const flaw = () => {
     const x = random() * 900;
     const y = random() * width;

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import type { SettleProblem, SettleResult } from '$lib/settle/problem';
+import type { SettlePiece, SettleProblem, SettleResult } from '$lib/settle/problem';
 import { createSolver } from '$lib/settle/solver';
 import { validate } from '$lib/settle/validate';
 import { oddProblem, piece, problem, rectangle, ways } from './made-up-problem';
@@ -80,10 +80,29 @@ describe('each rule is kept, and the check sees it broken', () => {
       asked: problem([
         piece('ell', ell, {
           copies: 4,
-          lattice: { anchor: { x: 30, y: 10 }, x: { size: 60, at: 7 }, y: { size: 45, at: 3 } }
+          lattice: {
+            anchor: { x: 30, y: 10 },
+            x: { size: 60, at: 7 },
+            y: { size: 45, at: 3 },
+            group: null
+          }
         })
       ]),
       spoil: (result) => moved(result, 0, { x: result.placements[0]!.x + 0.5 })
+    },
+    {
+      // Two panels matched to each other, wherever in the repeat that is.
+      rule: 'lattice',
+      asked: problem([
+        piece('ell', ell, { copies: 2, ways: ways(0), lattice: matched({ x: 30, y: 10 }) }),
+        piece('a', rectangle(300, 200), { copies: 2, ways: ways(0), lattice: matched({ x: 300, y: 70 }) })
+      ]),
+      spoil: (result) => moved(result, 3, { y: result.placements[3]!.y + 1 })
+    },
+    {
+      rule: 'band',
+      asked: problem([piece('ell', ell, { copies: 3, band: { from: 400, to: 700 } }), piece('a', ell)]),
+      spoil: (result) => moved(result, 0, { y: 0, x: 5000, turn: 0 })
     },
     {
       rule: 'nap',
@@ -135,6 +154,10 @@ describe('each rule is kept, and the check sees it broken', () => {
     expect(rulesBroken(asked, moved(result, 0, { x: 1, y: 1, turn: 0 }))).toContain('outside');
   });
 });
+
+function matched(anchor: { x: number; y: number }): SettlePiece['lattice'] {
+  return { anchor, x: { size: 60, at: 0 }, y: { size: 45, at: 0 }, group: 'front' };
+}
 
 function moved(
   result: SettleResult,
