@@ -35,6 +35,7 @@ export function stripProblem(strip: StripFile): SettleProblem {
       lattice: null
     })),
     locked: [],
+    preferredSide: null,
     start: []
   };
 }

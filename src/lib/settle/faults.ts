@@ -1,3 +1,4 @@
+import Flatbush from 'flatbush';
 import { placeOutline } from '$lib/geometry/placement';
 import { millimetres } from '$lib/lay/wording';
 import { depthOf, placedOf } from './placed-outline';
@@ -27,19 +28,18 @@ function pieceFaults(piece: SettlePiece, problem: SettleProblem): ProblemFault[]
     })
   );
   const across = Math.min(...sizes.map((size) => size.across));
-  if (across > width + touching)
+  const wide = piece.band ? piece.band.to - piece.band.from : width;
+  if (across > wide + touching)
     return [
       fault(
         'too-wide',
         [piece.id],
-        across - width,
-        `${piece.name} is ${millimetres(across)} across in every way it may lie; the cloth is ${millimetres(width)} wide.`
+        across - wide,
+        `${piece.name} is ${millimetres(across)} across in every way it may lie; the ${piece.band ? 'part of the cloth that it needs' : 'cloth'} is ${millimetres(wide)} wide.`
       )
     ];
   if (length === null) return [];
-  const along = Math.min(
-    ...sizes.filter((size) => size.across <= width + touching).map((size) => size.along)
-  );
+  const along = Math.min(...sizes.filter((size) => size.across <= wide + touching).map((size) => size.along));
   return along > length + touching
     ? [
         fault(
@@ -55,8 +55,12 @@ function pieceFaults(piece: SettlePiece, problem: SettleProblem): ProblemFault[]
 function lockFaults(problem: SettleProblem): ProblemFault[] {
   const { width, length, touching } = problem;
   const locks = problem.locked.map((lock) => ({ ...lock, placed: placedOf(lock.id, lock.outline, true) }));
+  if (locks.length === 0) return [];
   const flaws = problem.keepOuts.map((outline) => placedOf('', outline, true));
   const faults: ProblemFault[] = [];
+  const boxes = new Flatbush(locks.length);
+  for (const { placed } of locks) boxes.add(placed.minX, placed.minY, placed.maxX, placed.maxY);
+  boxes.finish();
   locks.forEach((lock, i) => {
     const { minX, minY, maxX, maxY } = lock.placed;
     const out = Math.max(-minX, -minY, maxY - width, maxX - (length ?? Infinity));
@@ -67,7 +71,9 @@ function lockFaults(problem: SettleProblem): ProblemFault[] {
     const onFlaw = Math.max(0, ...flaws.map((flaw) => depthOf(lock.placed, flaw)));
     if (onFlaw > touching)
       faults.push(fault('lock-on-flaw', [lock.id], onFlaw, `${lock.name} is locked on a flaw of the cloth.`));
-    for (const other of locks.slice(0, i)) {
+    const near = boxes.search(minX, minY, maxX, maxY).filter((j) => j < i);
+    for (const j of near.sort((a, b) => a - b)) {
+      const other = locks[j]!;
       const depth = depthOf(lock.placed, other.placed);
       if (depth > touching)
         faults.push(

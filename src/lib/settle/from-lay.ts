@@ -34,7 +34,11 @@ const FREE_TURNS = Array.from({ length: 12 }, (_, i) => i * 30);
 export function fromLay(
   document: LayDocument,
   book: PanelBook,
-  options: { readonly reach: SettleReach; readonly from: SettleFrom }
+  options: {
+    readonly reach: SettleReach;
+    readonly from: SettleFrom;
+    readonly side?: 'near' | 'far' | null | undefined;
+  }
 ): LaySettle {
   const { strip } = document;
   const stays = document.placements.filter((one) => one.locked || options.reach === 'loose');
@@ -82,6 +86,7 @@ export function fromLay(
       keepOuts: strip.flaws.map(({ x, y, radius }) => circleAround(x, y, Math.max(radius, 0.01))),
       clearance: strip.clearance,
       touching: TOUCHING,
+      preferredSide: options.side ?? null,
       pieces,
       locked: stays.flatMap((one) => {
         const panel = panelOfPlacement(document, book, one);

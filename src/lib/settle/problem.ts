@@ -79,6 +79,8 @@ export interface SettleProblem {
   readonly pieces: readonly SettlePiece[];
   /** Outlines, as they lie, of the pieces that stay where they are. */
   readonly locked: readonly { readonly id: string; readonly name: string; readonly outline: Outline }[];
+  /** The selvedge at which pieces lie rather, so that what is left of the width lies along the other one. */
+  readonly preferredSide: 'near' | 'far' | null;
   /** The lay to go on from; pieces that it does not place are looked after first. */
   readonly start: readonly SettlePlacement[];
 }

@@ -19,6 +19,8 @@ export const settleChoiceSchema = z.object({
   budgetSeconds: z.number().min(2).max(LONGEST_RUN).nullable(),
   from: z.enum(['scratch', 'here']),
   pieces: z.enum(['all', 'loose']),
+  /** The selvedge at which pieces lie rather; null: either. */
+  side: z.enum(['near', 'far']).nullable().optional(),
   seed: z.int().min(1).max(1_000_000).optional()
 });
 export type SettleChoice = z.infer<typeof settleChoiceSchema>;
@@ -64,13 +66,13 @@ export interface RunProblem {
 export function problemOfRun(
   document: LayDocument,
   book: PanelBook,
-  choice: Pick<SettleChoice, 'from' | 'pieces'>,
+  choice: Pick<SettleChoice, 'from' | 'pieces' | 'side'>,
   best: Pick<SettleBest, 'placements'> | null
 ): RunProblem {
   const reach: SettleReach = choice.pieces;
   if (!best) {
     const begun = reach === 'all' ? withNeededHands(document, book) : document;
-    const settle = fromLay(begun, book, { reach, from: choice.from });
+    const settle = fromLay(begun, book, { reach, from: choice.from, side: choice.side });
     return { settle, placementsOf: (result, newId) => toPlacements(begun, settle, result, newId) };
   }
   // What stays is locked for the while, so that what the run placed is told apart from what lay there before.
@@ -82,7 +84,7 @@ export function problemOfRun(
   const going = laidBy(document, {
     placements: best.placements.map((one) => ({ ...one, locked: stays(one) }))
   });
-  const settle = fromLay(going, book, { reach: 'all', from: 'here' });
+  const settle = fromLay(going, book, { reach: 'all', from: 'here', side: choice.side });
   return {
     settle,
     placementsOf: (result, newId) =>

@@ -6,6 +6,7 @@ import { createStore } from './no-fit-store';
 import type { SettlePlacement, SettleProblem, SettleResult } from './problem';
 import { randomFrom } from './random';
 import { search, type Course } from './search';
+import { towardsSide } from './side';
 import { outlineArea, placeOf, taskOf, type Task } from './task';
 
 /** Bytes of no-fit tables that one solver keeps. */
@@ -45,7 +46,7 @@ export function createSolver(
   options: { seed: number; floor?: number; deal?: number }
 ): Solver {
   const random = randomFrom(options.seed);
-  const task = taskOf(problem, randomFrom(options.deal ?? 0));
+  const task = dealt(problem, options.deal ?? 0);
   const store = createStore(task.forms, task.clear, task.clearance, TABLE_CAP);
   const field = createField(task, store, random);
   const n = task.items.length;
@@ -110,6 +111,30 @@ export function createSolver(
       return resultOf(problem, task, lay, kept, field.looked());
     }
   };
+}
+
+/** How many deals of naps and places in the repeat are tried; the one with the shortest first lay is kept. */
+const DEALS = 6;
+/** With more pieces a first lay for each deal would keep the person waiting. */
+const FEW_PIECES = 300;
+
+/** The problem as a task, with a good one of several deals where something may be dealt. */
+function dealt(problem: SettleProblem, deal: number): Task {
+  const open = problem.pieces.some((piece) => piece.napGroup !== null || piece.lattice?.group);
+  const first = taskOf(problem, randomFrom(deal));
+  if (!open || first.items.length > FEW_PIECES) return first;
+  let best = first;
+  let shortest = firstLay(first, randomFrom(deal), 0.04, null, null).length;
+  for (let k = 1; k < DEALS; k++) {
+    const task = taskOf(problem, randomFrom(deal + k * 7919));
+    const { length } = firstLay(task, randomFrom(deal), 0.04, null, null);
+    // A deal that leaves pieces no way to lie is none.
+    if (task.unplaceable.length > best.unplaceable.length) continue;
+    if (length >= shortest && task.unplaceable.length === best.unplaceable.length) continue;
+    best = task;
+    shortest = length;
+  }
+  return best;
 }
 
 function closed(task: Task, course: Course): boolean {
@@ -206,7 +231,7 @@ function resultOf(
   // Simplified outlines reach a little farther than the true ones.
   const length = placements.length === 0 ? task.lockedTo / task.scale : usedLength(problem, placements);
   return {
-    placements,
+    placements: towardsSide(problem, placements),
     length,
     density: length > 0 ? area / (problem.width * length) : 0,
     leftOver,

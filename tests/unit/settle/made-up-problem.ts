@@ -42,6 +42,7 @@ export function problem(pieces: SettlePiece[], changes: Partial<SettleProblem> =
     touching: 0.01,
     pieces,
     locked: [],
+    preferredSide: null,
     start: [],
     ...changes
   };
@@ -127,6 +128,7 @@ export function oddProblem(seed: number): SettleProblem {
         ]
       : null,
     keepOuts: pick(0.3) ? Array.from({ length: 1 + Math.floor(random() * 3) }, flaw) : [],
+    preferredSide: pick(0.3) ? (pick(0.5) ? 'near' : 'far') : null,
     clearance: pick(0.4) ? Math.round(random() * 8000) / 1000 : 0,
     locked: pick(0.25)
       ? [

@@ -182,6 +182,27 @@ describe('what is said before anything runs', () => {
   });
 });
 
+describe('the preferred side', () => {
+  it('leaves what is free of the width along the other selvedge, at the same length', () => {
+    const free = mixed(5, 6);
+    const middle = (asked: SettleProblem) => {
+      const result = run(asked, 4, 2, 4000).result();
+      expect(validate(asked, result)).toEqual([]);
+      return {
+        length: result.length,
+        y: result.placements.reduce((sum, one) => sum + one.y, 0) / result.placements.length
+      };
+    };
+    const either = middle(free);
+    const near = middle({ ...free, preferredSide: 'near' });
+    const far = middle({ ...free, preferredSide: 'far' });
+    expect(near.length).toBeCloseTo(either.length, 6);
+    expect(far.length).toBeCloseTo(either.length, 6);
+    expect(near.y).toBeLessThan(either.y);
+    expect(far.y).toBeGreaterThan(either.y);
+  });
+});
+
 it('random problems ask for every rule', () => {
   const problems = Array.from({ length: 120 }, (_, k) => oddProblem(10_000 + k));
   const some = (test: (asked: SettleProblem) => boolean) =>
@@ -194,4 +215,7 @@ it('random problems ask for every rule', () => {
   some((asked) => asked.pieces.some((one) => one.lattice !== null));
   some((asked) => asked.pieces.some((one) => one.napGroup !== null));
   some((asked) => asked.pieces.some((one) => one.onFold));
+  some((asked) => asked.pieces.some((one) => one.band !== null));
+  some((asked) => asked.pieces.some((one) => one.lattice?.group != null));
+  some((asked) => asked.preferredSide !== null);
 });
