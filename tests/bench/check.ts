@@ -3,6 +3,8 @@
  * 50 dragged pieces. Prints a table; asserts nothing about time. Run: npx tsx tests/bench/check.ts
  */
 import polygonClipping, { type Polygon } from 'polygon-clipping';
+import { noShrinkage } from '$lib/cloth/shrinkage';
+import { noSplices } from '$lib/cloth/what-to-buy';
 import { openSpread } from '$lib/cloth/strip';
 import { placeOutline } from '$lib/geometry/placement';
 import { snapPoint, type Point } from '$lib/geometry/point';
@@ -80,7 +82,7 @@ function layOf(pitchX: number, pitchY: number): LayDocument {
     locked: false
   }));
   return {
-    schema: 1,
+    schema: 2,
     strip: {
       spread: openSpread(1500),
       usableWidth: 1500,
@@ -90,6 +92,10 @@ function layOf(pitchX: number, pitchY: number): LayDocument {
       sidesAlike: true,
       repeat: { along: null, across: null },
       flaws: [],
+      given: null,
+      shrinkage: noShrinkage,
+      splices: noSplices,
+      wholeRepeats: false,
       endAllowance: { start: 20, end: 20 },
       reserve: 0,
       buyStep: 100,
@@ -103,7 +109,7 @@ function layOf(pitchX: number, pitchY: number): LayDocument {
       count: PIECES / KINDS
     })),
     placements,
-    rules: { matchGroups: [], matchTolerance: 1 }
+    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
   };
 }
 

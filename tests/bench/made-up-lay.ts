@@ -1,3 +1,5 @@
+import { noShrinkage } from '../../src/lib/cloth/shrinkage';
+import { noSplices } from '../../src/lib/cloth/what-to-buy';
 import { openSpread } from '../../src/lib/cloth/strip';
 import type { LayDocument, LayPlacement, Need } from '../../src/lib/lay/document';
 import { panelKey, type LayPanel } from '../../src/lib/lay/panel-book';
@@ -132,7 +134,7 @@ export function madeUpLay(pieces: number, points: number, loose = 0, seed = 7): 
   return {
     panels,
     document: {
-      schema: 1,
+      schema: 2,
       strip: {
         spread: openSpread(width),
         usableWidth: width,
@@ -142,6 +144,10 @@ export function madeUpLay(pieces: number, points: number, loose = 0, seed = 7): 
         sidesAlike: false,
         repeat: { along: null, across: null },
         flaws: [],
+        given: null,
+        shrinkage: noShrinkage,
+        splices: noSplices,
+        wholeRepeats: false,
         endAllowance: { start: 20, end: 20 },
         reserve: 0,
         buyStep: 100,
@@ -150,7 +156,7 @@ export function madeUpLay(pieces: number, points: number, loose = 0, seed = 7): 
       garments,
       needs,
       placements,
-      rules: { matchGroups: [], matchTolerance: 1 }
+      rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
     }
   };
 }

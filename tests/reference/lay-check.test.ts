@@ -126,7 +126,7 @@ describe('the facts of cutting out (common practice, no published source)', () =
   });
 
   it('no piece lies on a flaw of the cloth, or nearer than the clearance', () => {
-    const flaw = { id: 'f', x: 100, y: 300, radius: 5, note: 'slub' };
+    const flaw = { id: 'f', x: 100, y: 300, along: 0, across: 0, radius: 5, note: 'slub' };
     const flawed = { ...good, strip: { ...napped, flaws: [flaw] } };
     expect(check(flawed, book).findings).toMatchObject([
       { kind: 'flaw', severity: 'stops', placements: ['yoke'] }
@@ -143,14 +143,17 @@ describe('the facts of cutting out (common practice, no published source)', () =
     const document = lay(
       holed,
       [placement('yoke', 'yoke', { x: 0, y: 0 })],
-      strip({ flaws: [{ id: 'f', x: 50, y: 50, radius: 20, note: '' }] })
+      strip({ flaws: [{ id: 'f', x: 50, y: 50, along: 0, across: 0, radius: 20, note: '' }] })
     );
     expect(kinds(document, holed)).toEqual([]);
     expect(
       kinds(
         {
           ...document,
-          strip: { ...document.strip, flaws: [{ id: 'f', x: 75, y: 50, radius: 20, note: '' }] }
+          strip: {
+            ...document.strip,
+            flaws: [{ id: 'f', x: 75, y: 50, along: 0, across: 0, radius: 20, note: '' }]
+          }
         },
         holed
       )

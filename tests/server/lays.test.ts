@@ -141,7 +141,7 @@ describe('saving', () => {
         usableWidth: 985,
         spread: [{ from: 0, to: 985, layers: [{ sideUp: 'wrong', nap: 'along' }], fold: 'none' }],
         length: 2400,
-        flaws: [{ id: 'f', x: 10, y: 10, radius: 3, note: 'slub' }],
+        flaws: [{ id: 'f', x: 10, y: 10, along: 0, across: 0, radius: 3, note: 'slub' }],
         endAllowance: { start: 40, end: 20 },
         reserve: 50,
         clearance: 5
@@ -183,6 +183,7 @@ describe('saving', () => {
       {
         rules: {
           matchTolerance: 1,
+          mayCoverFlaws: [],
           matchGroups: [{ id: 'm', points: [{ garment: `${foreign.item}:1`, panel: 'front', point: 'x' }] }]
         }
       }
@@ -243,7 +244,7 @@ describe('when the order changes under a lay', () => {
     const point = { garment: laid.garments[0]!.id, panel: 'front', point: 'waist' };
     const document: LayDocument = {
       ...laid,
-      rules: { matchTolerance: 1, matchGroups: [{ id: 'm', points: [point] }] }
+      rules: { matchTolerance: 1, mayCoverFlaws: [], matchGroups: [{ id: 'm', points: [point] }] }
     };
     await lays.save(scope, id, { version: 1, saveId: newId(), document });
     await cast.db('order_items').where({ id: rows.item }).delete();

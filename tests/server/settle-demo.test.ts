@@ -92,8 +92,8 @@ describe('a settled lay of the demo', () => {
         clearance: 7,
         length: 4000,
         flaws: [
-          { id: 'f1', x: 500, y: 400, radius: 60, note: 'Slub' },
-          { id: 'f2', x: 900, y: 900, radius: 15, note: '' }
+          { id: 'f1', x: 500, y: 400, along: 0, across: 0, radius: 60, note: 'Slub' },
+          { id: 'f2', x: 900, y: 900, along: 0, across: 0, radius: 15, note: '' }
         ]
       },
       placements: lay.document.placements.map((one) =>

@@ -1,4 +1,6 @@
 import { z } from 'zod';
+import { shrinkageSchema } from './shrinkage';
+import { splicesSchema } from './what-to-buy';
 
 /*
  * The cloth as it lies on the table: one strip of a usable width, seen from above. x = 0 is the cloth's start,
@@ -35,13 +37,35 @@ export const repeatSchema = z.object({
   symmetric: z.boolean()
 });
 
+/** A place that no piece may lie on: everything within `radius` of a box `along` by `across` about its middle. */
 export const flawSchema = z.object({
   id: z.string().min(1).max(64),
   x: mm,
   y: mm,
+  along: z.number().finite().min(0).max(200_000),
+  across: z.number().finite().min(0).max(10_000),
   radius: z.number().finite().min(0).max(5000),
   note: z.string().max(200)
 });
+
+export type Flaw = z.infer<typeof flawSchema>;
+
+/** The roll or remnant that a lay is made on. */
+export const givenSchema = z.object({
+  /** The cloth length of the studio. */
+  id: z.string().min(1).max(64),
+  /** As the workroom calls it: 'Roll 3, top shelf'. */
+  name: z.string().max(120),
+  kind: z.enum(['roll', 'remnant', 'client']),
+  batch: z.string().max(120),
+  /** The edge of an odd remnant, counter-clockwise, as it lies; null where it is a whole width. */
+  outline: z
+    .array(z.object({ x: z.number().finite(), y: z.number().finite() }))
+    .min(3)
+    .max(200)
+    .nullable()
+});
+export type Given = z.infer<typeof givenSchema>;
 
 export const stripSchema = z.object({
   spread: z.array(zoneSchema).min(1).max(20),
@@ -56,6 +80,13 @@ export const stripSchema = z.object({
   sidesAlike: z.boolean(),
   repeat: z.object({ along: repeatSchema.nullable(), across: repeatSchema.nullable() }),
   flaws: z.array(flawSchema).max(1000),
+  /** null: cloth that is still to be bought, or that nobody has measured in. */
+  given: givenSchema.nullable(),
+  /** How this cloth's shrinking is met. The measures of the strip are those of the cloth as it lies. */
+  shrinkage: shrinkageSchema,
+  splices: splicesSchema,
+  /** Whether the length to buy is a whole number of repeats. */
+  wholeRepeats: z.boolean(),
   endAllowance: z.object({ start: mm.max(2000), end: mm.max(2000) }),
   /** Added to the length to buy, before rounding up. */
   reserve: mm.max(10_000),

@@ -1,7 +1,7 @@
-import { sideUp, type Strip } from '$lib/cloth/strip';
+import { sideUp, type Given, type Strip } from '$lib/cloth/strip';
 import type { Box } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
-import type { LengthUnit } from '$lib/units/length';
+import { formatDecimal, type LengthUnit } from '$lib/units/length';
 import { line, pen, words, type Mark } from './drawing';
 import type { LaidPiece } from './laid-piece';
 import { onTape } from './measure-words';
@@ -153,6 +153,28 @@ function tape(frame: ClothFrame, unit: LengthUnit): Mark[] {
 /** Which side looks up, in words. */
 export function sideUpWords(strip: Strip): string {
   return strip.sidesAlike ? 'both sides alike' : `${sideUp(strip)} side up`;
+}
+
+/** The roll or remnant, as the workroom calls it, with its batch. */
+export function givenWords({ name, batch }: Given): string {
+  return batch === '' ? name : `${name}, batch ${batch}`;
+}
+
+/** What is done about shrinking, in lines; none where the cloth does not shrink. */
+export function shrinkingWords({ shrinkage }: Strip): string[] {
+  const { treatment, warp, weft } = shrinkage;
+  const percent = (share: number): string => `${formatDecimal(share * 100, 1)} %`;
+  const shares = `warp ${percent(warp)}, weft ${percent(weft)}`;
+  switch (treatment) {
+    case 'none':
+      return [];
+    case 'enlarged':
+      return [`pieces drawn here are enlarged for it: ${shares}`];
+    case 'shrunkFirst':
+      return [`shrink the cloth before laying: ${shares}`];
+    case 'boughtShrunk':
+      return ['bought shrunk: cut as it is'];
+  }
 }
 
 /** Plies on the table, all zones' deepest. */

@@ -1,6 +1,14 @@
 import type { Box } from '$lib/geometry/point';
 import { formatDecimal } from '$lib/units/length';
-import { napWords, plies, sideUpWords, spreadWords, type ClothFrame } from './cloth-frame';
+import {
+  napWords,
+  plies,
+  sideUpWords,
+  givenWords,
+  shrinkingWords,
+  spreadWords,
+  type ClothFrame
+} from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
 import { line, pen, rectangle, surface, words, wrapText, type Lettering, type Page } from './drawing';
 import type { GuideInput } from './guide-input';
@@ -141,6 +149,8 @@ function facts(
     ['Cloth', input.cloth],
     ['Width', `${length(strip.fullWidth)}, usable ${length(strip.usableWidth)}`],
     ['Up', sideUpWords(strip)],
+    ...(strip.given ? [['Cut from', givenWords(strip.given)] satisfies [string, string]] : []),
+    ...shrinkingWords(strip).map((words): [string, string] => ['Shrinking', words]),
     ['Spread', `${spreadWords(strip)}, ${plies(strip) === 1 ? 'single ply' : `${plies(strip)} plies`}`],
     ['Nap', napWords(strip)],
     ['Length of the lay', length(frame.lengthUsed)],

@@ -59,10 +59,12 @@ export const layRulesSchema = z.object({
       })
     )
     .max(100),
-  matchTolerance: z.number().finite().min(0).max(50)
+  matchTolerance: z.number().finite().min(0).max(50),
+  /** Panels that may lie over a flaw, because nobody will see it there: a facing, a pocket bag. */
+  mayCoverFlaws: z.array(z.object({ styleVersion: id, panel: id })).max(500)
 });
 
-export const LAY_SCHEMA = 1;
+export const LAY_SCHEMA = 2;
 export const layDocumentSchema = z.object({
   schema: z.literal(LAY_SCHEMA),
   strip: stripSchema,

@@ -1,3 +1,4 @@
+import { enlargesUnequally } from '$lib/cloth/shrinkage';
 import type { Hand } from '$lib/pattern/panel';
 import type { LayDocument, NeedHand } from './document';
 import { balance, panelOfPlacement, type LoosePiece, type Surplus } from './needs';
@@ -21,6 +22,7 @@ export function findingsOfCounts(
     ...missingPieces(document, book, missing),
     ...extra.map((one) => surplusPiece(document, book, one)),
     ...unconfirmedGrain(document, book),
+    ...shearedPanels(document, book),
     ...unpaired(document, book, placed)
   ];
 }
@@ -166,6 +168,33 @@ function unconfirmedGrain(document: LayDocument, book: PanelBook): Finding[] {
       subject: { garment: id, panel: panelId, hand: 'either' },
       message: `The grain line of ${panel.shape.name} is a guess of the import. Confirm it on the style first.`
     });
+  }
+  return [...found.values()];
+}
+
+/** Bias panels on cloth for which panels are enlarged more one way than the other: they would come out sheared. */
+function shearedPanels(document: LayDocument, book: PanelBook): Finding[] {
+  if (!enlargesUnequally(document.strip.shrinkage)) return [];
+  const garments = new Map(document.garments.map((garment) => [garment.id, garment]));
+  const found = new Map<string, Finding>();
+  for (const { garment: id, panel: panelId } of document.needs) {
+    const garment = garments.get(id);
+    const panel = panelOf(book, garment, panelId);
+    if (!garment || panel?.turns !== 'bias') continue;
+    const key = panelKey(garment.styleVersion, panelId);
+    if (!found.has(key))
+      found.set(key, {
+        ...nowhere,
+        kind: 'shrinkage',
+        severity: 'stops',
+        placements: document.placements
+          .filter(
+            (one) => one.panel === panelId && garments.get(one.garment)?.styleVersion === garment.styleVersion
+          )
+          .map((one) => one.id),
+        subject: { garment: id, panel: panelId, hand: 'either' },
+        message: `${panel.shape.name} is cut on the bias, and this cloth shrinks unequally along warp and weft: enlarging would shear it. Shrink the cloth before it is laid.`
+      });
   }
   return [...found.values()];
 }

@@ -1,13 +1,12 @@
-import { placeOutline } from '$lib/geometry/placement';
 import type { Outline, Point } from '$lib/geometry/point';
-import { contains, growBox } from '$lib/geometry/polygon';
+import { outside as reachOutside } from '$lib/geometry/outside';
+import { growBox } from '$lib/geometry/polygon';
 import { outlineOf } from '$lib/geometry/prepared';
-import { pointSegmentSquared } from '$lib/geometry/segment';
 import { TOUCHING } from '$lib/geometry/tolerance';
-import type { Millimetres } from '$lib/units/measure';
 import { overhang, sideName, type StripSide } from './borders';
 import type { LayDocument } from './document';
 import { CLEARANCE_SLACK } from './findings-between';
+import { flawBox, mayCoverFlaws, roomToFlaw } from './flaw-room';
 import type { PanelBook } from './panel-book';
 import type { PlacedPiece } from './placed';
 import { againstNap, beyondTolerance, offGrain, way } from './turns';
@@ -23,6 +22,7 @@ export function findingsEach(
   return [
     ...placed.flatMap((piece) => [
       ...outside(document, book, piece),
+      ...overTheEdge(document, book, piece),
       ...turned(document, book, piece),
       ...onFlaws(document, book, piece)
     ]),
@@ -65,6 +65,23 @@ function outside(document: LayDocument, book: PanelBook, piece: PlacedPiece): Fi
         `${nameOf(document, book, piece.placement)} hangs ${millimetres(over[side])} over ${sideName[side]}.`
       )
     );
+}
+
+/** On an odd remnant: over an edge that is not straight across. */
+function overTheEdge(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
+  const edge = document.strip.given?.outline;
+  if (!edge) return [];
+  const { depth, at } = reachOutside(outlineOf(piece.outline), edge);
+  if (depth <= TOUCHING || !at) return [];
+  return [
+    stops(
+      piece,
+      'outside-edge',
+      { value: depth, unit: 'mm' },
+      at,
+      `${nameOf(document, book, piece.placement)} hangs ${millimetres(depth)} over the edge of the remnant.`
+    )
+  ];
 }
 
 /** The place of an outline that reaches farthest to a side. */
@@ -137,11 +154,14 @@ function unlikeTheirGarment(
 
 function onFlaws(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
   const { flaws, clearance } = document.strip;
+  if (flaws.length === 0 || mayCoverFlaws(document, piece.placement)) return [];
   return flaws.flatMap((flaw) => {
     const needed = flaw.radius + clearance;
     const near = growBox(piece.outline.box, needed);
-    if (flaw.x < near.minX || flaw.x > near.maxX || flaw.y < near.minY || flaw.y > near.maxY) return [];
-    const room = roomAround(piece, flaw);
+    const box = flawBox(flaw);
+    if (box.minX > near.maxX || box.maxX < near.minX || box.minY > near.maxY || box.maxY < near.minY)
+      return [];
+    const room = roomToFlaw(piece, flaw);
     if (room >= needed - CLEARANCE_SLACK) return [];
     const note = flaw.note === '' ? '' : ` (${flaw.note})`;
     return [
@@ -156,25 +176,4 @@ function onFlaws(document: LayDocument, book: PanelBook, piece: PlacedPiece): Fi
       )
     ];
   });
-}
-
-/** How far `point` is from the cloth of a piece, negative inside it; a cut-out is not of the piece. */
-function roomAround({ panel, placement, outline }: PlacedPiece, point: Point): Millimetres {
-  const cut = outlineOf(outline);
-  const gap = toOutline(cut, point);
-  if (!contains(cut, point)) return gap;
-  for (const hole of panel.shape.cutOuts) {
-    const placedHole = placeOutline(hole, placement);
-    if (contains(placedHole, point)) return Math.min(gap, toOutline(placedHole, point));
-  }
-  return -gap;
-}
-
-function toOutline(outline: Outline, { x, y }: Point): Millimetres {
-  let least = Infinity;
-  outline.forEach((a, i) => {
-    const b = outline[(i + 1) % outline.length]!;
-    least = Math.min(least, pointSegmentSquared(x, y, a.x, a.y, b.x, b.y));
-  });
-  return Math.sqrt(least);
 }

@@ -1,4 +1,5 @@
 import { boxDistance, outlineDistance } from '$lib/geometry/distance';
+import { outside } from '$lib/geometry/outside';
 import { overlapDepth } from '$lib/geometry/overlap';
 import { overlapRegion } from '$lib/geometry/overlap-region';
 import type { Placement } from '$lib/geometry/placement';
@@ -48,6 +49,8 @@ export interface LivePiece {
   readonly againstNap: boolean;
   /** How far it hangs over each side; 0 where it does not. */
   readonly outside: Readonly<Record<StripSide, Millimetres>>;
+  /** How far it hangs over the edge of an odd remnant; 0 where it does not. */
+  readonly overEdge: Millimetres;
   readonly box: Box;
 }
 
@@ -109,6 +112,7 @@ function liveOf(document: LayDocument, book: PanelBook, all: readonly PlacedPiec
           beyondTolerance: beyondTolerance(panel, placement.turn),
           againstNap: againstNap(panel, strip, placement.turn),
           outside: overhang(own.box, strip),
+          overEdge: strip.given?.outline ? outside(outlineOf(own), strip.given.outline).depth : 0,
           box: own.box
         };
       });

@@ -1,5 +1,5 @@
-import { roundUpTo } from '$lib/cloth/cost';
 import type { Strip } from '$lib/cloth/strip';
+import { whatToBuy } from '$lib/cloth/what-to-buy';
 import { cosSin } from '$lib/geometry/placement';
 import type { PieceShape } from '$lib/pattern/piece-shape';
 import type { Millimetres, SquareMillimetres } from '$lib/units/measure';
@@ -30,17 +30,18 @@ function reach(shape: PieceShape, placement: LayPlacement): Millimetres {
   return most + placement.x;
 }
 
-/** The cloth to buy for a length used: ends, reserve and rounding, all terms named. */
+/** The cloth to buy for a length used: ends, splices, reserve, shrinking, repeats and rounding, all terms named. */
 export function clothToBuy(strip: Strip, lengthUsed: Millimetres): Readings['clothToBuy'] {
-  const { start, end } = strip.endAllowance;
-  return {
+  const { endAllowance, splices, reserve, shrinkage, wholeRepeats, repeat, buyStep } = strip;
+  return whatToBuy({
     lengthUsed,
-    start,
-    end,
-    reserve: strip.reserve,
-    roundedUpTo: strip.buyStep,
-    total: roundUpTo(lengthUsed + start + end + strip.reserve, strip.buyStep)
-  };
+    endAllowance,
+    splices,
+    reserve,
+    shrinkage,
+    wholeRepeats: wholeRepeats ? (repeat.along?.size ?? null) : null,
+    step: buyStep
+  });
 }
 
 /** Efficiency and utilisation of `placed` square millimetres on a length used; null while nothing lies there. */

@@ -12,7 +12,30 @@ import type { LayPanel, PanelBook } from './panel-book';
 export type Upgrade = (document: Readonly<Record<string, unknown>>) => Record<string, unknown>;
 
 /** `upgrades.get(n)` brings schema n to n + 1. Each gets a test with a literal document before and after. */
-const upgrades: ReadonlyMap<number, Upgrade> = new Map();
+const upgrades: ReadonlyMap<number, Upgrade> = new Map([[1, toSecond]]);
+
+/** Schema 2 knows the cloth length that a lay is made on, flaws with two measures, shrinking, splices and whole repeats. */
+function toSecond(document: Readonly<Record<string, unknown>>): Record<string, unknown> {
+  const strip = document.strip as Record<string, unknown> | null | undefined;
+  const rules = document.rules as Record<string, unknown> | null | undefined;
+  const flaws = strip?.flaws;
+  return {
+    ...document,
+    ...(strip && {
+      strip: {
+        ...strip,
+        flaws: Array.isArray(flaws)
+          ? flaws.map((flaw: Record<string, unknown>) => ({ ...flaw, along: 0, across: 0 }))
+          : flaws,
+        given: null,
+        shrinkage: { treatment: 'none', warp: 0, weft: 0 },
+        splices: { count: 0, each: 0 },
+        wholeRepeats: false
+      }
+    }),
+    ...(rules && { rules: { ...rules, mayCoverFlaws: [] } })
+  };
+}
 
 /** A document that does not fit, with what was got and what is expected. */
 export class UnreadableDocument extends Error {
@@ -117,6 +140,6 @@ export function newLay(from: {
     garments: [...from.garments],
     needs: needsOf(from.garments, from.book, from.strip, from.takes),
     placements: [],
-    rules: { matchGroups: [], matchTolerance: 1 }
+    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
   };
 }

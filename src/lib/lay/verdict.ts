@@ -1,3 +1,4 @@
+import type { BuyTerms } from '$lib/cloth/what-to-buy';
 import type { Box, Outline, Point } from '$lib/geometry/point';
 import type { Millimetres, Share, SquareMillimetres } from '$lib/units/measure';
 
@@ -17,14 +18,7 @@ export interface Readings {
   readonly utilisation: Share | null;
   /** No lay of all needs can be shorter; with the reason. */
   readonly leastLength: { readonly length: Millimetres; readonly reason: LeastLengthReason };
-  readonly clothToBuy: {
-    readonly lengthUsed: Millimetres;
-    readonly start: Millimetres;
-    readonly end: Millimetres;
-    readonly reserve: Millimetres;
-    readonly roundedUpTo: Millimetres;
-    readonly total: Millimetres;
-  };
+  readonly clothToBuy: BuyTerms;
 }
 
 export type LeastLengthReason =
@@ -38,6 +32,7 @@ export const findingKinds = [
   'clearance',
   'outside-width',
   'outside-length',
+  'outside-edge',
   'off-grain',
   'against-nap',
   'wrong-hand',
@@ -47,6 +42,7 @@ export const findingKinds = [
   'unknown-panel',
   'grain-unconfirmed',
   'flaw',
+  'shrinkage',
   'stop-style-replaced'
 ] as const;
 export type FindingKind = (typeof findingKinds)[number];

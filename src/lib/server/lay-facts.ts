@@ -1,3 +1,5 @@
+import { noShrinkage } from '$lib/cloth/shrinkage';
+import { noSplices } from '$lib/cloth/what-to-buy';
 import { openSpread, type Strip } from '$lib/cloth/strip';
 import type { Garment, LayDocument } from '$lib/lay/document';
 import { needsOf } from '$lib/lay/needs';
@@ -226,6 +228,10 @@ export function stripOf(cloth: ClothFacts): Strip {
     sidesAlike: cloth.sidesAlike,
     repeat: { along: null, across: null },
     flaws: [],
+    given: null,
+    shrinkage: noShrinkage,
+    splices: noSplices,
+    wholeRepeats: false,
     endAllowance: { start: 20, end: 20 },
     reserve: 0,
     buyStep: 100,

@@ -1,8 +1,9 @@
-import type { Strip } from '$lib/cloth/strip';
+import type { Flaw, Strip } from '$lib/cloth/strip';
 import { placeOutline, snapPlacement } from '$lib/geometry/placement';
 import type { Outline } from '$lib/geometry/point';
 import { TOUCHING } from '$lib/geometry/tolerance';
 import type { LayDocument, LayPlacement, NeedHand } from '$lib/lay/document';
+import { flawBox } from '$lib/lay/flaw-room';
 import { balance, panelOfPlacement } from '$lib/lay/needs';
 import { panelOf, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
 import { allowedTurns, againstNap, way as napWay } from '$lib/lay/turns';
@@ -82,8 +83,8 @@ export function fromLay(
     problem: {
       width: strip.usableWidth,
       length: strip.length,
-      outline: null,
-      keepOuts: strip.flaws.map(({ x, y, radius }) => circleAround(x, y, Math.max(radius, 0.01))),
+      outline: strip.given?.outline ?? null,
+      keepOuts: strip.flaws.map(keepOutOf),
       clearance: strip.clearance,
       touching: TOUCHING,
       preferredSide: options.side ?? null,
@@ -204,6 +205,19 @@ function latticeOf(document: LayDocument, panel: LayPanel, garment: string): Lat
 }
 
 const line = (repeat: Strip['repeat']['along']) => repeat && { size: repeat.size, at: repeat.offset };
+
+/** What a flaw takes: its box, grown by its radius where it has one. */
+function keepOutOf(flaw: Flaw): Outline {
+  const { minX, minY, maxX, maxY } = flawBox(flaw);
+  if (minX === maxX) return circleAround(flaw.x, flaw.y, Math.max(flaw.radius, 0.01));
+  const { radius } = flaw;
+  return [
+    { x: minX - radius, y: minY - radius },
+    { x: maxX + radius, y: minY - radius },
+    { x: maxX + radius, y: maxY + radius },
+    { x: minX - radius, y: maxY + radius }
+  ];
+}
 
 /** A polygon outside the circle, at most 1 % farther out. */
 function circleAround(x: number, y: number, radius: number): Outline {

@@ -111,6 +111,7 @@ const ofPlaces: readonly FindingKind[] = [
   'clearance',
   'outside-width',
   'outside-length',
+  'outside-edge',
   'off-grain',
   'against-nap',
   'flaw'

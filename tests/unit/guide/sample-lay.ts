@@ -1,5 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
+import { noShrinkage } from '$lib/cloth/shrinkage';
+import { noSplices } from '$lib/cloth/what-to-buy';
 import { openSpread } from '$lib/cloth/strip';
 import { placeOutline } from '$lib/geometry/placement';
 import { snap, type Outline, type Point } from '$lib/geometry/point';
@@ -169,7 +171,7 @@ const where: [string, string, number, number, number, boolean][] = [
 export function sampleDocument(garments = 1, pitch = 1720): LayDocument {
   const ids = Array.from({ length: garments }, (_, i) => `g${i + 1}`);
   return layDocumentSchema.parse({
-    schema: 1,
+    schema: 2,
     strip: {
       spread: openSpread(1480),
       usableWidth: 1480,
@@ -179,6 +181,10 @@ export function sampleDocument(garments = 1, pitch = 1720): LayDocument {
       sidesAlike: false,
       repeat: { along: null, across: null },
       flaws: [],
+      given: null,
+      shrinkage: noShrinkage,
+      splices: noSplices,
+      wholeRepeats: false,
       endAllowance: { start: 20, end: 20 },
       reserve: 0,
       buyStep: 100,
@@ -203,7 +209,7 @@ export function sampleDocument(garments = 1, pitch = 1720): LayDocument {
         locked: false
       }))
     ),
-    rules: { matchGroups: [], matchTolerance: 1 }
+    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
   });
 }
 
@@ -243,7 +249,17 @@ export function sampleInput(document = sampleDocument(), more: Partial<GuideInpu
       efficiency: total / (lengthUsed * document.strip.usableWidth),
       utilisation: 0.6,
       leastLength: { length: 1000, reason: { kind: 'nothing' } },
-      clothToBuy: { lengthUsed, start: 20, end: 20, reserve: 0, roundedUpTo: 100, total: lengthUsed + 40 }
+      clothToBuy: {
+        lengthUsed,
+        start: 20,
+        end: 20,
+        splices: 0,
+        reserve: 0,
+        shrinkage: 0,
+        repeats: 0,
+        roundedUpTo: 100,
+        total: lengthUsed + 40
+      }
     },
     scanAddress: 'https://example.test/r/1a2b3c4d5e6f00000000',
     lengthUnit: 'cm',

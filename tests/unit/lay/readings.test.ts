@@ -44,7 +44,17 @@ describe('readings', () => {
       area: 240_000,
       efficiency: 240_000 / (1000 * 410),
       utilisation: 240_000 / (1020 * 450),
-      clothToBuy: { lengthUsed: 410, start: 20, end: 20, reserve: 15, roundedUpTo: 100, total: 500 }
+      clothToBuy: {
+        lengthUsed: 410,
+        start: 20,
+        end: 20,
+        splices: 0,
+        reserve: 15,
+        shrinkage: 0,
+        repeats: 0,
+        roundedUpTo: 100,
+        total: 500
+      }
     });
   });
 

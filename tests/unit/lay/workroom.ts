@@ -1,4 +1,6 @@
 import fc from 'fast-check';
+import { noShrinkage } from '$lib/cloth/shrinkage';
+import { noSplices } from '$lib/cloth/what-to-buy';
 import { openSpread, type Strip } from '$lib/cloth/strip';
 import { snapPoint, type Outline, type Point } from '$lib/geometry/point';
 import type { Garment, LayDocument, LayPlacement } from '$lib/lay/document';
@@ -21,6 +23,10 @@ export function strip(changes: Partial<Strip> = {}): Strip {
     sidesAlike: false,
     repeat: { along: null, across: null },
     flaws: [],
+    given: null,
+    shrinkage: noShrinkage,
+    splices: noSplices,
+    wholeRepeats: false,
     endAllowance: { start: 20, end: 20 },
     reserve: 0,
     buyStep: 100,
@@ -99,12 +105,12 @@ export function lay(
   garments: readonly Garment[] = [garment()]
 ): LayDocument {
   return {
-    schema: 1,
+    schema: 2,
     strip: cloth,
     garments: [...garments],
     needs: needsOf(garments, book, cloth),
     placements: [...placements],
-    rules: { matchGroups: [], matchTolerance: 1 }
+    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
   };
 }
 

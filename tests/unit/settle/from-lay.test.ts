@@ -62,8 +62,8 @@ describe('a lay is settled without a finding', () => {
       'cloth with flaws',
       {
         flaws: [
-          { id: 'f1', x: 200, y: 300, radius: 30, note: '' },
-          { id: 'f2', x: 500, y: 700, radius: 0, note: '' }
+          { id: 'f1', x: 200, y: 300, along: 0, across: 0, radius: 30, note: '' },
+          { id: 'f2', x: 500, y: 700, along: 0, across: 0, radius: 0, note: '' }
         ]
       }
     ]

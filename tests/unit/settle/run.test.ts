@@ -38,7 +38,10 @@ describe('what stops a settled lay from being shown', () => {
     expect(kinds(before, laid({ y: 201 }))).toEqual(['clearance']);
     expect(kinds(before, laid({ turn: 3 }))).toContain('off-grain');
     expect(
-      kinds(before, laid({}, strip({ flaws: [{ id: 'f', x: 200, y: 350, radius: 10, note: '' }] })))
+      kinds(
+        before,
+        laid({}, strip({ flaws: [{ id: 'f', x: 200, y: 350, along: 0, across: 0, radius: 10, note: '' }] }))
+      )
     ).toEqual(['flaw']);
   });
 

@@ -37,6 +37,7 @@ export interface ReadingWords {
 
 export function readingWords(readings: Readings, unit: LengthUnit): ReadingWords {
   const { clothToBuy: buy } = readings;
+  const added = (name: string, mm: number) => (mm > 0 ? [{ name, value: `+ ${short(mm, unit)}` }] : []);
   return {
     lengthUsed: short(readings.lengthUsed, unit),
     efficiency: percent(readings.efficiency),
@@ -48,7 +49,10 @@ export function readingWords(readings: Readings, unit: LengthUnit): ReadingWords
       { name: 'Length used', value: short(buy.lengthUsed, unit) },
       { name: 'Zero end', value: `+ ${short(buy.start, unit)}` },
       { name: 'Far end', value: `+ ${short(buy.end, unit)}` },
+      ...added('Splices', buy.splices),
       { name: 'Reserve', value: `+ ${short(buy.reserve, unit)}` },
+      ...added('Shrinking', buy.shrinkage),
+      ...added('Whole repeats', buy.repeats),
       { name: 'Rounded up to whole', value: short(buy.roundedUpTo, unit) }
     ]
   };

@@ -1,5 +1,5 @@
 import { seen, toScreen, type Viewport } from '$lib/client/viewport';
-import { sideUp, type Strip } from '$lib/cloth/strip';
+import { sideUp, type Flaw, type Strip } from '$lib/cloth/strip';
 import { dyes, inkOn, mix } from './dyes';
 
 /*
@@ -70,7 +70,8 @@ export function drawCloth(ctx: CanvasRenderingContext2D, view: Viewport, look: C
   chalkLine(ctx, view, 0, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
   if (strip.length === null) drawRoll(ctx, view, colour, end, -selvedge, width + selvedge);
   else chalkLine(ctx, view, strip.length, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
-  for (const flaw of strip.flaws) drawFlaw(ctx, view, flaw.x, flaw.y, flaw.radius);
+  if (strip.given?.outline) drawBeyondEdge(ctx, view, look, start, end, selvedge);
+  for (const flaw of strip.flaws) drawFlaw(ctx, view, flaw);
 }
 
 function chalkLine(
@@ -199,17 +200,64 @@ function drawRoll(
   ctx.stroke();
 }
 
-function drawFlaw(ctx: CanvasRenderingContext2D, view: Viewport, x: number, y: number, radius: number): void {
-  const at = toScreen(view, { x, y });
-  const r = Math.max(5, radius * view.scale);
+/** A flaw: its box and radius crossed out, never too small to be seen. */
+function drawFlaw(ctx: CanvasRenderingContext2D, view: Viewport, flaw: Flaw): void {
+  const reach = { x: flaw.along / 2 + flaw.radius, y: flaw.across / 2 + flaw.radius };
+  const a = toScreen(view, { x: flaw.x - reach.x, y: flaw.y - reach.y });
+  const b = toScreen(view, { x: flaw.x + reach.x, y: flaw.y + reach.y });
+  const middle = { left: (a.left + b.left) / 2, top: (a.top + b.top) / 2 };
+  const half = {
+    left: Math.max(5, Math.abs(b.left - a.left) / 2),
+    top: Math.max(5, Math.abs(b.top - a.top) / 2)
+  };
   ctx.strokeStyle = dyes.madder;
   ctx.lineWidth = 1.5;
   ctx.beginPath();
-  ctx.arc(at.left, at.top, r, 0, 2 * Math.PI);
-  ctx.moveTo(at.left - r * 0.7, at.top - r * 0.7);
-  ctx.lineTo(at.left + r * 0.7, at.top + r * 0.7);
-  ctx.moveTo(at.left + r * 0.7, at.top - r * 0.7);
-  ctx.lineTo(at.left - r * 0.7, at.top + r * 0.7);
+  if (flaw.along > 0 || flaw.across > 0)
+    ctx.rect(middle.left - half.left, middle.top - half.top, 2 * half.left, 2 * half.top);
+  else ctx.arc(middle.left, middle.top, half.left, 0, 2 * Math.PI);
+  const arm = flaw.along > 0 || flaw.across > 0 ? 1 : 0.7;
+  ctx.moveTo(middle.left - half.left * arm, middle.top - half.top * arm);
+  ctx.lineTo(middle.left + half.left * arm, middle.top + half.top * arm);
+  ctx.moveTo(middle.left + half.left * arm, middle.top - half.top * arm);
+  ctx.lineTo(middle.left - half.left * arm, middle.top + half.top * arm);
+  ctx.stroke();
+}
+
+/** Around an odd remnant: what of the strip is not cloth, veiled and hatched, its edge chalked. */
+function drawBeyondEdge(
+  ctx: CanvasRenderingContext2D,
+  view: Viewport,
+  { strip, colour }: ClothLook,
+  start: number,
+  end: number,
+  selvedge: number
+): void {
+  const ring = (points: readonly { x: number; y: number }[]): void => {
+    points.forEach((point, i) => {
+      const at = toScreen(view, point);
+      if (i === 0) ctx.moveTo(at.left, at.top);
+      else ctx.lineTo(at.left, at.top);
+    });
+    ctx.closePath();
+  };
+  const edge = strip.given!.outline!;
+  ctx.beginPath();
+  ring([
+    { x: start, y: -selvedge },
+    { x: end, y: -selvedge },
+    { x: end, y: strip.usableWidth + selvedge },
+    { x: start, y: strip.usableWidth + selvedge }
+  ]);
+  ring(edge);
+  ctx.fillStyle = 'rgba(246, 241, 231, 0.88)';
+  ctx.fill('evenodd');
+  ctx.fillStyle = hatch(ctx, inkOn(colour, 0.28));
+  ctx.fill('evenodd');
+  ctx.beginPath();
+  ring(edge);
+  ctx.strokeStyle = inkOn(colour, 0.85);
+  ctx.lineWidth = 2;
   ctx.stroke();
 }
 
