@@ -22,7 +22,10 @@ declare global {
         lengthUnit: 'cm' | 'in';
         timeZone: string;
         isDemo: boolean;
+        secondFactorRequired: boolean;
       } | null;
+      /** The studio asks its owners for a second factor, and this one has none yet: nothing else opens before. */
+      secondFactorDue?: boolean;
     }
   }
 }

@@ -64,6 +64,8 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     access: 'anyone',
     call: () => ({ form: { email: 'who@far.example', password: 'x' } })
   },
+  '/sign-in/code load': { access: 'anyone' },
+  '/sign-in/code ?/default': { access: 'anyone', call: () => ({ form: { code: '123456' } }) },
   '/sign-out POST': { access: 'anyone' },
   '/sign-up load': { access: 'anyone' },
   '/sign-up ?/default': {
@@ -123,6 +125,22 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   },
   '/profile ?/endOthers': { access: 'person' },
   '/profile ?/endAll': { access: 'person' },
+  '/profile/second-factor load': { access: 'person' },
+  '/profile/second-factor ?/turnOn': {
+    access: 'person',
+    answers: [400],
+    call: () => ({ form: { password, code: '123456' } })
+  },
+  '/profile/second-factor ?/renewCodes': {
+    access: 'person',
+    answers: [400],
+    call: () => ({ form: { password, code: '123456' } })
+  },
+  '/profile/second-factor ?/turnOff': {
+    access: 'person',
+    answers: [400],
+    call: () => ({ form: { password, code: '123456' } })
+  },
   '/studios load': { access: 'person' },
   '/studios ?/enter': {
     access: 'person',
@@ -136,6 +154,10 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/people ?/invite': {
     access: 'people: manage',
     call: () => ({ form: { email: 'somebody@far.example', role: 'cutter' } })
+  },
+  '/people ?/requireSecondFactor': {
+    access: 'people: manage',
+    call: () => ({ form: { required: 'no' } })
   },
   '/people ?/takeBack': {
     access: 'people: manage',

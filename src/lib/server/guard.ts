@@ -17,6 +17,7 @@ export function allow(event: Pick<RequestEvent, 'locals' | 'url'>, permission: P
   signedIn(event);
   const { scope } = event.locals;
   if (!scope) redirect(303, '/studios');
+  if (event.locals.secondFactorDue) redirect(303, '/profile/second-factor?due');
   if (!may(scope.role, permission))
     error(403, {
       message: 'Your role in this studio does not include this.',
@@ -60,6 +61,13 @@ export function api<E extends RequestEvent>(
         throw new Problem(401, 'signed-out', 'You are signed out', 'Sign in again; nothing you did is lost.');
       if (!locals.scope)
         throw new Problem(403, 'no-studio', 'No studio', 'Choose a studio that you belong to first.');
+      if (locals.secondFactorDue)
+        throw new Problem(
+          403,
+          'second-factor-due',
+          'A second factor is due',
+          'The studio asks it of its owners: turn it on under your profile.'
+        );
       if (!may(locals.scope.role, permission))
         throw new Problem(
           403,

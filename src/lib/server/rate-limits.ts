@@ -19,6 +19,8 @@ const limits = {
   'sign-in: address': new RateLimiterMemory({ points: 200, duration: hour }),
   /** Wrong present passwords on the profile page. */
   'password: person': new RateLimiterMemory({ points: 10, duration: 15 * minute }),
+  /** Wrong one-time codes of one person. */
+  'code: person': new RateLimiterMemory({ points: 8, duration: 15 * minute }),
   /** New studios by one person. */
   'studios: person': new RateLimiterMemory({ points: 10, duration: hour }),
   /** Requests for a mail from one place. */

@@ -1,4 +1,5 @@
 import type { Knex } from 'knex';
+import * as audit from './audit';
 import { database } from './database';
 import { newId } from './ids';
 import type { Role } from './permissions';
@@ -13,6 +14,8 @@ export interface Studio {
   readonly lengthUnit: 'cm' | 'in';
   readonly timeZone: string;
   readonly isDemo: boolean;
+  /** Whether its owners must have a second factor. */
+  readonly secondFactorRequired: boolean;
 }
 
 interface StudioRow {
@@ -22,9 +25,18 @@ interface StudioRow {
   length_unit: 'cm' | 'in';
   time_zone: string;
   is_demo: number;
+  second_factor_required: number;
 }
 
-const columns = ['studios.id', 'studios.name', 'currency', 'length_unit', 'time_zone', 'is_demo'];
+const columns = [
+  'studios.id',
+  'studios.name',
+  'currency',
+  'length_unit',
+  'time_zone',
+  'is_demo',
+  'second_factor_required'
+];
 
 function studioOf(row: StudioRow): Studio {
   return {
@@ -33,7 +45,8 @@ function studioOf(row: StudioRow): Studio {
     currency: row.currency,
     lengthUnit: row.length_unit,
     timeZone: row.time_zone,
-    isDemo: row.is_demo === 1
+    isDemo: row.is_demo === 1,
+    secondFactorRequired: row.second_factor_required === 1
   };
 }
 
@@ -58,6 +71,22 @@ export async function update(scope: Scope, settings: StudioSettings): Promise<vo
     currency: settings.currency,
     length_unit: settings.lengthUnit,
     time_zone: settings.timeZone
+  });
+}
+
+/** Whether the studio's owners must have a second factor from now on. */
+export async function requireSecondFactor(scope: Scope, required: boolean): Promise<void> {
+  await database().transaction(async (trx) => {
+    await trx('studios')
+      .where({ id: scope.studio })
+      .update({ second_factor_required: required ? 1 : 0 });
+    await audit.recordBy(
+      scope,
+      required ? 'second factor: required of owners' : 'second factor: left free',
+      '',
+      {},
+      trx
+    );
   });
 }
 

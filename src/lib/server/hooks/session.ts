@@ -1,4 +1,5 @@
 import type { Handle } from '@sveltejs/kit';
+import * as secondFactor from '$lib/server/second-factor';
 import * as sessions from '$lib/server/sessions';
 import * as studios from '$lib/server/studios';
 
@@ -16,5 +17,10 @@ export const session: Handle = async ({ event, resolve }) => {
   const place = found.session.studioId ? await studios.enter(found.session.studioId, found.user.id) : null;
   event.locals.scope = place?.scope ?? null;
   event.locals.studio = place?.studio ?? null;
+  event.locals.secondFactorDue =
+    place !== null &&
+    place.studio.secondFactorRequired &&
+    place.scope.role === 'owner' &&
+    !(await secondFactor.has(found.user.id));
   return resolve(event);
 };

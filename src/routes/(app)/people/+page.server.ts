@@ -7,6 +7,7 @@ import * as people from '$lib/server/people';
 import { roles } from '$lib/server/permissions';
 import { Problem } from '$lib/server/problem';
 import * as rateLimits from '$lib/server/rate-limits';
+import * as studios from '$lib/server/studios';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
@@ -17,6 +18,7 @@ export const load: PageServerLoad = async (event) => {
     members,
     invited: invited.map((invitation) => ({ ...invitation, expired: invitation.expiresAt <= now })),
     ownId: scope.user,
+    secondFactorRequired: event.locals.studio!.secondFactorRequired,
     done: event.url.searchParams.get('done')
   };
 };
@@ -25,6 +27,7 @@ const role = z.enum(roles, { error: 'Choose a role.' });
 const invitation = z.object({ email: address, role });
 const roleChange = z.object({ userId: z.string(), role });
 const member = z.object({ userId: z.string() });
+const required = z.object({ required: z.enum(['yes', 'no'], { error: 'Say whether.' }) });
 const listed = z.object({ id: z.string() });
 
 export const actions: Actions = {
@@ -54,6 +57,15 @@ export const actions: Actions = {
     const read = await readForm(event.request, member);
     if (!read.ok) return read.refusal;
     return settle(read.values, read.data.userId, 'disabled', () => people.disable(scope, read.data.userId));
+  },
+  requireSecondFactor: async (event) => {
+    const scope = allow(event, 'people: manage');
+    const read = await readForm(event.request, required);
+    if (!read.ok) return read.refusal;
+    const yes = read.data.required === 'yes';
+    return settle(read.values, 'required', yes ? 'required' : 'left-free', () =>
+      studios.requireSecondFactor(scope, yes)
+    );
   },
   enable: async (event) => {
     const scope = allow(event, 'people: manage');

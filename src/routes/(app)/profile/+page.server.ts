@@ -8,6 +8,7 @@ import { newPassword } from '$lib/server/link-page';
 import { mayAskForMail } from '$lib/server/mail-requests';
 import * as passwordChanges from '$lib/server/password-changes';
 import { Problem } from '$lib/server/problem';
+import * as secondFactor from '$lib/server/second-factor';
 import * as sessions from '$lib/server/sessions';
 import type { Actions, PageServerLoad } from './$types';
 
@@ -16,6 +17,7 @@ export const load: PageServerLoad = async (event) => {
   return {
     name: user.name,
     email: user.email,
+    secondFactor: await secondFactor.has(user.id),
     sessions: (await sessions.list(user.id)).map((listed) => ({
       ...listed,
       isThis: listed.publicId === session.publicId

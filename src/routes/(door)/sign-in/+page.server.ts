@@ -3,9 +3,8 @@ import { z } from 'zod';
 import { address, readForm, refuse } from '$lib/server/forms';
 import { Problem } from '$lib/server/problem';
 import { returnPath } from '$lib/server/return-path';
-import * as sessions from '$lib/server/sessions';
 import { signIn } from '$lib/server/sign-in';
-import * as studios from '$lib/server/studios';
+import { admit } from '$lib/server/sign-in-waits';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = ({ locals, url }) => {
@@ -25,18 +24,14 @@ export const actions: Actions = {
     const read = await readForm(request, form);
     if (!read.ok) return read.refusal;
     const { email, password, next } = read.data;
+    let onward: string;
     try {
       const account = await signIn(email, password, getClientAddress());
-      await sessions.start(
-        cookies,
-        account.id,
-        await studios.landing(account.id),
-        request.headers.get('user-agent') ?? ''
-      );
+      onward = await admit(cookies, account.id, request.headers.get('user-agent') ?? '', returnPath(next));
     } catch (refusal) {
       if (refusal instanceof Problem) return refuse(read.values, { '': refusal.message }, refusal.status);
       throw refusal;
     }
-    redirect(303, returnPath(next));
+    redirect(303, onward);
   }
 };
