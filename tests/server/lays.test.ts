@@ -484,6 +484,6 @@ test('the price stays away from a cutter in the query itself', async () => {
   expect('price' in lay.cloth).toBe(false);
   expect(JSON.stringify(lay)).not.toContain('1234');
   expect(asked.filter((sql) => /price/.test(sql))).toEqual([]);
-  const facts = await layFacts.read(cast.here.owner.scope, rows.order, rows.main);
+  const facts = await layFacts.read(cast.here.owner.scope, [rows.order], rows.main);
   expect(facts.cloth.price).toEqual({ minor: 1234, unit: 'metre', currency: 'EUR' });
 });

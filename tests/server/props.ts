@@ -1,6 +1,9 @@
 import { readFileSync } from 'node:fs';
 import { guideChoiceSchema } from '$lib/guide/guide-choice';
+import sharp from 'sharp';
 import type { LayDocument } from '$lib/lay/document';
+import * as clothLengths from '$lib/server/cloth-lengths';
+import * as clothWidths from '$lib/server/cloth-widths';
 import { database } from '$lib/server/database';
 import * as guides from '$lib/server/guides';
 import { newId } from '$lib/server/ids';
@@ -11,6 +14,7 @@ import { registerAllJobs } from '$lib/server/job-kinds';
 import { JobRunner } from '$lib/server/job-runner';
 import * as layRelease from '$lib/server/lay-release';
 import * as lays from '$lib/server/lays';
+import { createPicture } from '$lib/server/pictures';
 import * as sessions from '$lib/server/sessions';
 import * as settleRuns from '$lib/server/settle-runs';
 import type { SettleBest } from '$lib/settle/run';
@@ -31,6 +35,11 @@ export interface Props {
   readonly styleVersion: string;
   readonly cloth: string;
   readonly lining: string;
+  /** A roll of the main cloth with a photo and a flaw, and a width that the main cloth is sold in. */
+  readonly clothLength: string;
+  readonly clothLengthVersion: string;
+  readonly clothFlaw: string;
+  readonly clothWidth: string;
   /** An open lay on the main cloth with a good document, one revision kept. */
   readonly lay: string;
   readonly layVersion: number;
@@ -103,6 +112,40 @@ export async function makeProps(house: House): Promise<Props> {
   const { version } = await lays.read(scope, releasedLay);
   await layRelease.release(scope, releasedLay, { version, name: 'For cutting' });
 
+  const clothLength = await clothLengths.create(scope, rows.main, {
+    kind: 'roll',
+    name: 'Roll 1',
+    length: 5000,
+    usableWidth: 990,
+    typed: { length: '5 m', usableWidth: '99 cm' },
+    outline: null,
+    batch: 'B7',
+    place: 'Top shelf',
+    note: '',
+    price: { minor: price.main, unit: 'metre' }
+  });
+  const { flaw: clothFlaw } = await clothLengths.addFlaw(scope, clothLength, {
+    fromEnd: 4000,
+    fromSelvedge: 300,
+    along: 20,
+    across: 5,
+    hole: false,
+    note: 'slub'
+  });
+  const dot = await sharp({ create: { width: 8, height: 8, channels: 3, background: '#2F5D7C' } })
+    .png()
+    .toBuffer();
+  const photo = await createPicture(scope, { name: 'roll.png', bytes: dot });
+  await clothLengths.setPhoto(scope, clothLength, photo.id);
+  const clothWidth = await clothWidths.create(scope, rows.main, {
+    seller: 'Weir mill',
+    fullWidth: 1140,
+    usableWidth: 1100,
+    buyStep: 100,
+    price: { minor: price.main, unit: 'metre' }
+  });
+  const { version: clothLengthVersion } = await clothLengths.read(scope, clothLength);
+
   const upload = await imports.create(scope, {
     name: 'sample.svg',
     bytes: readFileSync('static/sample.svg')
@@ -140,6 +183,10 @@ export async function makeProps(house: House): Promise<Props> {
     styleVersion: rows.styleVersion,
     cloth: rows.main,
     lining: rows.lining,
+    clothLength,
+    clothLengthVersion: String(clothLengthVersion),
+    clothFlaw,
+    clothWidth,
     lay,
     layVersion,
     layDocument,

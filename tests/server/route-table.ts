@@ -43,6 +43,9 @@ const lineForm = (own: Props, changes: Record<string, string> = {}) => ({
   'cloth.lining': own.lining,
   ...changes
 });
+const lengthForm = { kind: 'roll', name: 'Roll 9', length: '4 m', usableWidth: '98 cm' };
+const onLength = (own: Props, form?: Record<string, string>): Call =>
+  params({ id: own.clothLength }, form ? { form } : {});
 const token = 'x'.repeat(43);
 const onOrder = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.order }, form ? { form } : {});
@@ -202,6 +205,85 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/cloths/[id] ?/putBack': {
     access: 'cloths: change',
     call: (own) => params({ id: own.cloth }, { form: {} })
+  },
+
+  '/cloths/[id] ?/addWidth': {
+    access: 'cloths: change',
+    call: (own) =>
+      params(
+        { id: own.cloth },
+        {
+          form: {
+            fullWidth: '120 cm',
+            usableWidth: '116 cm',
+            buyStep: '10 cm',
+            price: '9',
+            priceUnit: 'metre'
+          }
+        }
+      )
+  },
+  '/cloths/[id] ?/removeWidth': {
+    access: 'cloths: change',
+    call: (own) => params({ id: own.cloth }, { form: { width: own.clothWidth } }),
+    foreign: (own, other) => ({ width: params({ id: own.cloth }, { form: { width: other.clothWidth } }) })
+  },
+
+  // Rolls and remnants.
+  '/cloths/[id]/lengths/new load': {
+    access: 'cloth lengths: change',
+    call: (own) => params({ id: own.cloth })
+  },
+  '/cloths/[id]/lengths/new ?/default': {
+    access: 'cloth lengths: change',
+    call: (own) => params({ id: own.cloth }, { form: lengthForm })
+  },
+  '/cloths/lengths/[id] load': { access: 'cloths: see', call: (own) => onLength(own) },
+  '/cloths/lengths/[id] ?/save': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { ...lengthForm, version: own.clothLengthVersion })
+  },
+  '/cloths/lengths/[id] ?/photo': {
+    access: 'cloth lengths: change',
+    answers: [400],
+    call: (own) => onLength(own, {})
+  },
+  '/cloths/lengths/[id] ?/addFlaw': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { fromEnd: '30 cm', fromSelvedge: '20 cm', along: '2 cm', across: '1 cm' })
+  },
+  '/cloths/lengths/[id] ?/removeFlaw': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { flaw: own.clothFlaw }),
+    foreign: (own, other) => ({ flaw: onLength(own, { flaw: other.clothFlaw }) })
+  },
+  '/cloths/lengths/[id] ?/reserve': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { version: own.clothLengthVersion, order: own.order }),
+    foreign: (own, other) => ({
+      order: onLength(own, { version: own.clothLengthVersion, order: other.order })
+    })
+  },
+  '/cloths/lengths/[id] ?/release': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { version: own.clothLengthVersion })
+  },
+  '/cloths/lengths/[id] ?/sign': {
+    access: 'cloth lengths: change',
+    call: (own) => onLength(own, { version: own.clothLengthVersion, by: 'Ada' })
+  },
+  '/api/cloth-lengths/[id]/photo GET': { access: 'cloths: see', call: (own) => onLength(own) },
+  '/lays/[id]/cloth load': { access: 'lays: change', call: (own) => onLay(own) },
+  '/lays/[id]/cloth ?/default': {
+    access: 'lays: change',
+    call: (own) =>
+      params({ id: own.lay }, { form: { version: String(own.layVersion), length: own.clothLength } }),
+    foreign: (own, other) => ({
+      length: params(
+        { id: own.lay },
+        { form: { version: String(own.layVersion), length: other.clothLength } }
+      )
+    })
   },
 
   // Orders.

@@ -1,3 +1,4 @@
+import { withEnds } from '$lib/cloth/given-strip';
 import { sideUp, type Strip } from '$lib/cloth/strip';
 import type { Edit } from '$lib/lay/edit';
 import type { LayDocument } from '$lib/lay/document';
@@ -18,20 +19,26 @@ export const PLAIN_END = 20;
 export const SQUARED_END = 40;
 
 /** What can be set. */
-export type StripSettings = Pick<Strip, 'clearance' | 'endAllowance' | 'reserve' | 'buyStep' | 'length'> & {
+export type StripSettings = Pick<
+  Strip,
+  'clearance' | 'endAllowance' | 'reserve' | 'length' | 'splices' | 'wholeRepeats'
+> & {
   readonly sideUp: 'right' | 'wrong';
 };
 
 export function settingsOf(strip: Strip): StripSettings {
-  const { clearance, endAllowance, reserve, buyStep, length } = strip;
-  return { clearance, endAllowance, reserve, buyStep, length, sideUp: sideUp(strip) };
+  const { clearance, endAllowance, reserve, length, splices, wholeRepeats } = strip;
+  return { clearance, endAllowance, reserve, length, splices, wholeRepeats, sideUp: sideUp(strip) };
 }
 
 /** The lay with other settings of its cloth. Turning the cloth over turns every layer. */
 export function setStrip(document: LayDocument, settings: StripSettings): Edit {
   const before = settingsOf(document.strip);
   if (JSON.stringify(before) === JSON.stringify(settings)) return { refused: 'Nothing was changed.' };
-  const { sideUp: side, ...fields } = settings;
+  const { sideUp: side, endAllowance, length, ...fields } = settings;
+  const ends = withEnds(document.strip, endAllowance);
+  // A roll or remnant has the length that it has.
+  const laid = ends.given ? ends : { ...ends, length };
   const spread =
     side === before.sideUp
       ? document.strip.spread
@@ -43,7 +50,7 @@ export function setStrip(document: LayDocument, settings: StripSettings): Edit {
           }))
         }));
   return {
-    document: { ...document, strip: { ...document.strip, ...fields, spread } },
+    document: { ...document, strip: { ...laid, ...fields, spread } },
     said:
       side === before.sideUp
         ? 'The cloth of this lay is set anew.'

@@ -40,8 +40,9 @@ export const repeatSchema = z.object({
 /** A place that no piece may lie on: everything within `radius` of a box `along` by `across` about its middle. */
 export const flawSchema = z.object({
   id: z.string().min(1).max(64),
-  x: mm,
-  y: mm,
+  /** Its middle; before the start of the lay where it lies in the end allowance. */
+  x: z.number().finite().min(-1e6).max(1e6),
+  y: z.number().finite().min(-1e6).max(1e6),
   along: z.number().finite().min(0).max(200_000),
   across: z.number().finite().min(0).max(10_000),
   radius: z.number().finite().min(0).max(5000),

@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { priceUnits } from '$lib/cloth/cost';
+import { MOST_SHRINKAGE, noShrinkage, treatments } from '$lib/cloth/shrinkage';
 import { formatLength, parseLength, type LengthUnit } from '$lib/units/length';
 import { parseMoney } from '$lib/units/money';
 import { clothNaps, type ClothInput } from './cloths';
@@ -18,6 +19,20 @@ const width = (unit: LengthUnit, words: string) =>
     // A bare number is kept with the unit that it was meant in: the studio may change its unit later.
     const text = typed.trim();
     return { mm: reading.mm, typed: /[\p{L}"'″′”’]/u.test(text) ? text : `${text} ${unit}` };
+  });
+
+/** A share typed in per cent, 0 to the most that cloth shrinks by. */
+const percent = z
+  .string()
+  .default('')
+  .transform((typed, context) => {
+    const number = typed.trim() === '' ? 0 : Number(typed.trim().replace(/\s*%$/, '').replace(',', '.'));
+    if (number >= 0 && number <= MOST_SHRINKAGE * 100) return number / 100;
+    context.addIssue({
+      code: 'custom',
+      message: `Type a percentage of 0 to ${MOST_SHRINKAGE * 100}, such as 3.5.`
+    });
+    return z.NEVER;
   });
 
 /**
@@ -48,6 +63,19 @@ export function clothForm({ lengthUnit, currency }: { lengthUnit: LengthUnit; cu
         .string()
         .regex(/^#[0-9a-fA-F]{6}$/, 'A colour is written like #2F5D7C.')
         .default('#FFFDF8'),
+      treatment: z.enum(treatments, 'Say what is done about shrinking.').default('none'),
+      shrinkWarp: percent,
+      shrinkWeft: percent,
+      buyStep: z
+        .string()
+        .default('')
+        .transform((typed, context) => {
+          if (typed.trim() === '') return 100;
+          const reading = parseLength(typed, lengthUnit, { least: 1, most: 10_000 });
+          if (reading.error === undefined) return reading.mm;
+          context.addIssue({ code: 'custom', message: reading.error });
+          return z.NEVER;
+        }),
       supplierNote: z.string().trim().max(2000, 'At most 2000 characters, please.').default('')
     })
     .transform((form, context): ClothInput => {
@@ -67,7 +95,12 @@ export function clothForm({ lengthUnit, currency }: { lengthUnit: LengthUnit; cu
         sidesAlike: form.sides === 'alike',
         nap: form.nap,
         colour: form.colour,
-        supplierNote: form.supplierNote
+        supplierNote: form.supplierNote,
+        shrinkage:
+          form.treatment === 'none'
+            ? noShrinkage
+            : { treatment: form.treatment, warp: form.shrinkWarp, weft: form.shrinkWeft },
+        buyStep: form.buyStep
       };
     });
 }

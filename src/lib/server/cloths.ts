@@ -1,6 +1,7 @@
 import type { Knex } from 'knex';
 import { z } from 'zod';
 import type { PriceUnit } from '$lib/cloth/cost';
+import type { Shrinkage, Treatment } from '$lib/cloth/shrinkage';
 import type { Millimetres, Minor } from '$lib/units/measure';
 import * as audit from './audit';
 import { database } from './database';
@@ -43,6 +44,9 @@ export interface Cloth extends ListedCloth {
   readonly typed: { readonly fullWidth: string; readonly usableWidth: string };
   /** Absent for who must not see prices. */
   readonly supplierNote?: string;
+  readonly shrinkage: Shrinkage;
+  /** What it is sold in whole multiples of. */
+  readonly buyStep: Millimetres;
   readonly updatedAt: number;
 }
 
@@ -58,6 +62,10 @@ export interface ClothInput {
   /** #RRGGBB */
   readonly colour: string;
   readonly supplierNote: string;
+  /** Left out: it does not shrink. */
+  readonly shrinkage?: Shrinkage;
+  /** Left out: 100 mm. */
+  readonly buyStep?: Millimetres;
 }
 
 interface ClothRow {
@@ -71,6 +79,10 @@ interface ClothRow {
   nap: ClothNap;
   colour: string;
   archived_at: number | null;
+  shrink_treatment: Treatment;
+  shrink_warp: number;
+  shrink_weft: number;
+  buy_step: number;
   updated_at: number;
   price?: number | null;
   price_unit?: PriceUnit;
@@ -88,6 +100,10 @@ const open = [
   'nap',
   'colour',
   'archived_at',
+  'shrink_treatment',
+  'shrink_warp',
+  'shrink_weft',
+  'buy_step',
   'updated_at'
 ];
 const priced = [...open, 'price', 'price_unit', 'supplier_note'];
@@ -116,6 +132,8 @@ function clothOf(row: ClothRow): Cloth {
     ...listedOf(row),
     typed: typedSchema.parse(JSON.parse(row.typed)),
     ...(row.supplier_note === undefined ? {} : { supplierNote: row.supplier_note }),
+    shrinkage: { treatment: row.shrink_treatment, warp: row.shrink_warp, weft: row.shrink_weft },
+    buyStep: row.buy_step,
     updatedAt: row.updated_at
   };
 }
@@ -199,6 +217,10 @@ function rowOf(scope: Scope, cloth: ClothInput): Record<string, unknown> {
     sides_alike: cloth.sidesAlike ? 1 : 0,
     nap: cloth.nap,
     colour: cloth.colour,
+    shrink_treatment: cloth.shrinkage?.treatment ?? 'none',
+    shrink_warp: cloth.shrinkage?.warp ?? 0,
+    shrink_weft: cloth.shrinkage?.weft ?? 0,
+    buy_step: cloth.buyStep ?? 100,
     ...(may(scope.role, 'prices: change')
       ? {
           price: cloth.price?.minor ?? null,

@@ -2,16 +2,26 @@ import type { Strip } from '$lib/cloth/strip';
 import type { LayDocument } from '$lib/lay/document';
 import { panelKey } from '$lib/lay/panel-book';
 import { same } from '$lib/lay/same';
-import type { LayFacts } from './lay-facts';
+import { stripWith, type LayFacts } from './lay-facts';
 import { Problem } from './problem';
 
 /*
  * What a posted lay may say. The person decides where the pieces lie and what they measured on the table: usable width,
- * length, flaws, side up, end allowances, reserve, clearance. Garments, needs, full width, nap, sides, repeat and the
- * step of buying are the order's, the cloth's and the studio's.
+ * length, flaws, side up, end allowances, reserve, clearance. Garments, needs, full width, nap, sides, repeat, shrinking and
+ * the step of buying are the order's and the cloth's; on a roll or remnant so are length, width, edge and flaws.
  */
 
-const notTheirs: readonly (keyof Strip)[] = ['fullWidth', 'nap', 'sidesAlike', 'repeat', 'buyStep'];
+const notTheirs: readonly (keyof Strip)[] = [
+  'fullWidth',
+  'nap',
+  'sidesAlike',
+  'repeat',
+  'buyStep',
+  'shrinkage',
+  'given'
+];
+/** What a roll or remnant settles as well, where the lay is made on one. */
+const ofTheLength: readonly (keyof Strip)[] = ['length', 'usableWidth', 'flaws'];
 
 /**
  * Refuses (400) a posted document that claims what is the server's to say, or that names anything that is not of this
@@ -39,8 +49,12 @@ export function refuseWhatIsNotTheirs(
   };
   compare('garments', posted.garments, current.garments, stored.garments);
   compare('needs', posted.needs, current.needs, stored.needs);
-  for (const field of notTheirs)
-    compare(field, posted.strip[field], current.strip[field], stored.strip[field]);
+  // On a measured length the ends that the person chose decide where the lay, its flaws and its edge begin.
+  const now = facts.length
+    ? stripWith({ ...current.strip, endAllowance: posted.strip.endAllowance }, facts)
+    : current.strip;
+  for (const field of facts.length ? [...notTheirs, ...ofTheLength] : notTheirs)
+    compare(field, posted.strip[field], now[field], stored.strip[field]);
   if (changed) return 'facts-changed';
   refuseStrangers(posted, stored, facts);
   if (posted.strip.spread.length > 1 || posted.strip.spread[0]!.layers.length > 1)

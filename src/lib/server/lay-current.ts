@@ -5,6 +5,7 @@ import type { Knex } from 'knex';
 import { database } from './database';
 import * as layFacts from './lay-facts';
 import type { LayFacts } from './lay-facts';
+import * as layLengths from './lay-lengths';
 import * as layRevisions from './lay-revisions';
 import { notFound, Problem } from './problem';
 import type { Scope } from './scope';
@@ -39,6 +40,20 @@ export async function rowOf(scope: Scope, id: string, db: Knex = database()): Pr
   return row;
 }
 
+/** The orders that a lay serves: the one it was made from, then those that it was joined with. */
+export async function ordersOf(
+  scope: Scope,
+  row: Pick<LayRow, 'id' | 'order_id'>,
+  db: Knex = database()
+): Promise<[string, ...string[]]> {
+  const others = await db('lay_orders')
+    .join('orders', 'orders.id', 'lay_orders.order_id')
+    .where({ 'lay_orders.studio_id': scope.studio, 'lay_orders.lay_id': row.id })
+    .orderBy('orders.number')
+    .select<{ order_id: string }[]>('lay_orders.order_id');
+  return [row.order_id, ...others.map(({ order_id }) => order_id)];
+}
+
 /** What a lay is now: an open one with the facts of its order and cloth as they stand, a released one as it was kept. */
 export interface Current {
   readonly row: LayRow;
@@ -49,7 +64,12 @@ export interface Current {
 
 export async function current(scope: Scope, id: string): Promise<Current> {
   const row = await rowOf(scope, id);
-  const facts = await layFacts.read(scope, row.order_id, row.cloth_id);
+  const facts = await layFacts.read(
+    scope,
+    await ordersOf(scope, row),
+    row.cloth_id,
+    await layLengths.lengthOf(scope, id)
+  );
   if (row.state !== 'open' && row.released_revision_id) {
     const kept = await layRevisions.keptOf(scope, row.released_revision_id);
     return { row, facts, document: kept.document, panels: kept.panels };

@@ -1,7 +1,10 @@
-import { noShrinkage } from '$lib/cloth/shrinkage';
+import { onMeasuredLength, withWidth } from '$lib/cloth/given-strip';
+import { asLaid, type Shrinkage, type Treatment } from '$lib/cloth/shrinkage';
 import { noSplices } from '$lib/cloth/what-to-buy';
 import { openSpread, type Strip } from '$lib/cloth/strip';
+import { snap } from '$lib/geometry/point';
 import type { Garment, LayDocument } from '$lib/lay/document';
+import { enlargedPanel } from '$lib/lay/enlarged';
 import { needsOf } from '$lib/lay/needs';
 import { layPanelOf, panelKey, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
 import { same } from '$lib/lay/same';
@@ -9,7 +12,9 @@ import type { ClothRole } from '$lib/pattern/panel';
 import { openPanelSet } from '$lib/pattern/panel-set';
 import type { PriceUnit } from '$lib/cloth/cost';
 import type { Minor } from '$lib/units/measure';
+import type { ClothLength } from './cloth-lengths';
 import { database } from './database';
+import { measured } from './lay-lengths';
 import { may } from './permissions';
 import { notFound } from './problem';
 import type { Scope } from './scope';
@@ -20,8 +25,13 @@ import type { Scope } from './scope';
  */
 
 export interface LayFacts {
+  /** The order that the lay was made from: the first of a joint lay. */
   readonly order: { readonly id: string; readonly number: number; readonly clientName: string };
+  /** Every order that the lay serves, the first first. */
+  readonly orders: readonly { readonly id: string; readonly number: number }[];
   readonly cloth: ClothFacts;
+  /** The roll or remnant that the lay is made on; null: cloth that is still to be bought. */
+  readonly length: ClothLength | null;
   readonly garments: readonly Garment[];
   /** Every panel that a garment of this lay takes from this cloth. */
   readonly book: PanelBook;
@@ -39,18 +49,31 @@ export interface ClothFacts {
   readonly usableWidth: number;
   readonly nap: Strip['nap'];
   readonly sidesAlike: boolean;
-  /** Absent for who must not see prices, and while there is none. */
+  readonly shrinkage: Shrinkage;
+  readonly buyStep: number;
+  readonly currency: string;
+  /** Absent for who must not see prices, and while there is none. On a roll or remnant its own price. */
   readonly price?: { readonly minor: Minor; readonly unit: PriceUnit; readonly currency: string };
 }
 
-/** The facts of an order's lay on a cloth. 404 for an order or a cloth that is not of this studio. */
-export async function read(scope: Scope, orderId: string, clothId: string): Promise<LayFacts> {
-  const order = await database()('orders')
-    .where({ studio_id: scope.studio, id: orderId })
-    .first<{ id: string; number: number; client_name: string } | undefined>('id', 'number', 'client_name');
-  if (!order) throw notFound('order');
+/**
+ * The facts of a lay on a cloth for an order, or for several in a joint lay, on a roll or remnant or on cloth to buy. 404 for
+ * an order or a cloth that is not of this studio.
+ */
+export async function read(
+  scope: Scope,
+  orderIds: readonly [string, ...string[]],
+  clothId: string,
+  length: ClothLength | null = null
+): Promise<LayFacts> {
+  const orders = [];
+  for (const id of orderIds) orders.push(await orderFacts(scope, id));
+  const [order] = orders as [(typeof orders)[number]];
   const cloth = await clothFacts(scope, clothId);
-  const items = await itemsOn(scope, orderId, clothId);
+  const items: Item[] = [];
+  for (const { id, number } of orders)
+    for (const item of await itemsOn(scope, id, clothId))
+      items.push(orders.length > 1 ? { ...item, of: number } : item);
   const panels = new Map<string, readonly LayPanel[]>();
   for (const { styleVersion } of items)
     if (!panels.has(styleVersion)) panels.set(styleVersion, await panelsOf(scope, styleVersion));
@@ -61,14 +84,33 @@ export async function read(scope: Scope, orderId: string, clothId: string): Prom
   const book: Record<string, LayPanel> = {};
   for (const item of items)
     for (const panel of panels.get(item.styleVersion) ?? [])
-      if (item.roles.has(panel.role)) book[panelKey(item.styleVersion, panel.shape.panel)] = panel;
+      if (item.roles.has(panel.role))
+        book[panelKey(item.styleVersion, panel.shape.panel)] = enlargedPanel(panel, cloth.shrinkage);
   return {
-    order: { id: order.id, number: order.number, clientName: order.client_name },
-    cloth,
+    order,
+    orders: orders.map(({ id, number }) => ({ id, number })),
+    cloth: length ? { ...cloth, ...priceOf(length, cloth) } : cloth,
+    length,
     garments: items.flatMap(garmentsOf),
     book,
     takes
   };
+}
+
+async function orderFacts(
+  scope: Scope,
+  id: string
+): Promise<{ id: string; number: number; clientName: string }> {
+  const order = await database()('orders')
+    .where({ studio_id: scope.studio, id })
+    .first<{ id: string; number: number; client_name: string } | undefined>('id', 'number', 'client_name');
+  if (!order) throw notFound('order');
+  return { id: order.id, number: order.number, clientName: order.client_name };
+}
+
+/** What a roll or remnant costs, where it has a price of its own and the person may see prices. */
+function priceOf(length: ClothLength, cloth: ClothFacts): Pick<ClothFacts, 'price'> {
+  return length.price ? { price: { ...length.price, currency: cloth.currency } } : {};
 }
 
 interface Item {
@@ -79,6 +121,8 @@ interface Item {
   readonly styleName: string;
   /** The cloth roles for which this line takes the cloth of the lay. */
   readonly roles: Set<ClothRole>;
+  /** The number of its order, in a joint lay. */
+  readonly of?: number;
 }
 
 /** The order's lines that take something from this cloth. */
@@ -130,7 +174,9 @@ async function itemsOn(scope: Scope, orderId: string, clothId: string): Promise<
 
 /** One garment a copy of the line. Its id stays the same while the line does. */
 function garmentsOf(item: Item): Garment[] {
-  const name = [item.styleName, item.label].filter((part) => part !== '').join(' ');
+  const name = [item.of ? `No. ${item.of}` : '', item.styleName, item.label]
+    .filter((part) => part !== '')
+    .join(' ');
   return Array.from({ length: item.quantity }, (_, i) => ({
     id: `${item.id}:${i + 1}`,
     orderItem: item.id,
@@ -166,7 +212,12 @@ const clothColumns = {
   full_width: 'cloths.full_width',
   usable_width: 'cloths.usable_width',
   nap: 'cloths.nap',
-  sides_alike: 'cloths.sides_alike'
+  sides_alike: 'cloths.sides_alike',
+  shrink_treatment: 'cloths.shrink_treatment',
+  shrink_warp: 'cloths.shrink_warp',
+  shrink_weft: 'cloths.shrink_weft',
+  buy_step: 'cloths.buy_step',
+  currency: 'studios.currency'
 };
 
 async function clothFacts(scope: Scope, clothId: string): Promise<ClothFacts> {
@@ -185,9 +236,13 @@ async function clothFacts(scope: Scope, clothId: string): Promise<ClothFacts> {
           usable_width: number;
           nap: Strip['nap'];
           sides_alike: number;
+          shrink_treatment: Treatment;
+          shrink_warp: number;
+          shrink_weft: number;
+          buy_step: number;
+          currency: string;
           price?: number | null;
           price_unit?: PriceUnit;
-          currency?: string;
         }
       | undefined
     >(
@@ -195,8 +250,7 @@ async function clothFacts(scope: Scope, clothId: string): Promise<ClothFacts> {
         ? {
             ...clothColumns,
             price: 'cloths.price',
-            price_unit: 'cloths.price_unit',
-            currency: 'studios.currency'
+            price_unit: 'cloths.price_unit'
           }
         : clothColumns
     );
@@ -211,53 +265,52 @@ async function clothFacts(scope: Scope, clothId: string): Promise<ClothFacts> {
     usableWidth: row.usable_width,
     nap: row.nap,
     sidesAlike: row.sides_alike === 1,
-    ...(row.price != null && row.price_unit && row.currency
+    shrinkage: { treatment: row.shrink_treatment, warp: row.shrink_warp, weft: row.shrink_weft },
+    buyStep: row.buy_step,
+    currency: row.currency,
+    ...(row.price != null && row.price_unit
       ? { price: { minor: row.price, unit: row.price_unit, currency: row.currency } }
       : {})
   };
 }
 
-/** The strip that a new lay begins with: open cloth, right side up, shears. */
-export function stripOf(cloth: ClothFacts): Strip {
+/** The strip that a new lay begins with: open cloth, right side up, shears; shrunk where that is done first. */
+export function stripOf(
+  cloth: Pick<ClothFacts, 'fullWidth' | 'usableWidth' | 'nap' | 'sidesAlike' | 'shrinkage' | 'buyStep'>
+): Strip {
+  const usableWidth = laidWidth(cloth.shrinkage, cloth.usableWidth);
   return {
-    spread: openSpread(cloth.usableWidth),
-    usableWidth: cloth.usableWidth,
-    fullWidth: cloth.fullWidth,
+    spread: openSpread(usableWidth),
+    usableWidth,
+    fullWidth: laidWidth(cloth.shrinkage, cloth.fullWidth),
     length: null,
     nap: cloth.nap,
     sidesAlike: cloth.sidesAlike,
     repeat: { along: null, across: null },
     flaws: [],
     given: null,
-    shrinkage: noShrinkage,
+    shrinkage: cloth.shrinkage,
     splices: noSplices,
     wholeRepeats: false,
     endAllowance: { start: 20, end: 20 },
     reserve: 0,
-    buyStep: 100,
+    buyStep: cloth.buyStep,
     clearance: 3
   };
 }
 
+/** A width of the cloth as it lies, once it was shrunk where that is done first. */
+function laidWidth(shrinkage: Shrinkage, width: number): number {
+  return snap(asLaid(shrinkage, { along: 0, across: width }).across);
+}
+
 /**
  * `document` with what the server owns as it stands now: garments, needs, and the facts of the cloth that nobody changes
- * on the table. The usable width stays as measured there, within the full width. Gives `document` itself when nothing
- * differs.
+ * on the table. On a roll or remnant these are its length, width, edge and flaws as well; else the usable width stays as
+ * measured on the table, within the full width. Gives `document` itself when nothing differs.
  */
 export function withFacts(document: LayDocument, facts: LayFacts): LayDocument {
-  const { fullWidth, nap, sidesAlike } = facts.cloth;
-  const usableWidth = Math.min(document.strip.usableWidth, fullWidth);
-  const strip: Strip = {
-    ...document.strip,
-    fullWidth,
-    nap,
-    sidesAlike,
-    usableWidth,
-    spread:
-      usableWidth === document.strip.usableWidth
-        ? document.strip.spread
-        : openSpread(usableWidth, document.strip.spread[0]!.layers[0]!.sideUp)
-  };
+  const strip = stripWith(document.strip, facts);
   const garments = [...facts.garments];
   const current = {
     ...document,
@@ -266,4 +319,24 @@ export function withFacts(document: LayDocument, facts: LayFacts): LayDocument {
     needs: needsOf(garments, facts.book, strip, facts.takes)
   };
   return same(current, document) ? document : current;
+}
+
+/** A strip with what cloth and length say. */
+export function stripWith(before: Strip, { cloth, length }: Pick<LayFacts, 'cloth' | 'length'>): Strip {
+  const { nap, sidesAlike, shrinkage, buyStep } = cloth;
+  const strip: Strip = { ...before, nap, sidesAlike, shrinkage, buyStep };
+  if (length) return onMeasuredLength(strip, measured(length, cloth));
+  const fullWidth = laidWidth(shrinkage, cloth.fullWidth);
+  // Nothing measured on the table holds for other cloth, or for cloth that is treated otherwise.
+  const anew = before.given !== null || !same(before.shrinkage, shrinkage);
+  const usableWidth = anew
+    ? laidWidth(shrinkage, cloth.usableWidth)
+    : Math.min(before.usableWidth, fullWidth);
+  return {
+    ...strip,
+    fullWidth,
+    usableWidth,
+    spread: withWidth(before, usableWidth),
+    ...(before.given === null ? {} : { given: null, length: null, flaws: [] })
+  };
 }

@@ -122,10 +122,14 @@ export async function list(
   return { ...page, rows: page.rows.map(listedOf) };
 }
 
-/** Every lay of an order, the chosen ones first. */
+/** Every lay of an order, joint ones among them, the chosen ones first. */
 export async function ofOrder(scope: Scope, orderId: string): Promise<ListedLay[]> {
   const rows: LayRow[] = await query(scope)
-    .where({ 'lays.order_id': orderId })
+    .where((either) => {
+      either
+        .where({ 'lays.order_id': orderId })
+        .orWhereIn('lays.id', database()('lay_orders').where({ order_id: orderId }).select('lay_id'));
+    })
     .orderBy([{ column: 'lays.chosen', order: 'desc' }, 'lays.created_at']);
   return rows.map(listedOf);
 }

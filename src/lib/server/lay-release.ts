@@ -8,8 +8,17 @@ import type { Verdict } from '$lib/lay/verdict';
 import * as audit from './audit';
 import { database } from './database';
 import { newId } from './ids';
-import { current, outOfDate, refuseUnlessOpen, rowOf, type Current, type LayRow } from './lay-current';
+import {
+  current,
+  ordersOf,
+  outOfDate,
+  refuseUnlessOpen,
+  rowOf,
+  type Current,
+  type LayRow
+} from './lay-current';
 import * as layFacts from './lay-facts';
+import * as layLengths from './lay-lengths';
 import * as layRevisions from './lay-revisions';
 import type { ListedRevision, ReleasedRevision } from './lay-revisions';
 import * as lays from './lays';
@@ -151,6 +160,7 @@ export async function release(
     const row = await rowOf(scope, layId, trx);
     if (row.version !== naming.version || row.state !== 'open') return null;
     await lays.refuseBesideReleased(trx, scope, row);
+    await layLengths.claim(trx, scope, layId, await ordersOf(scope, row, trx), now);
     const revision = await insert(trx, scope, row, name, made, now, now);
     await trx('lays')
       .where({ studio_id: scope.studio, id: layId })

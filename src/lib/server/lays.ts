@@ -8,9 +8,18 @@ import type { Verdict } from '$lib/lay/verdict';
 import { database } from './database';
 import { newId } from './ids';
 import { refuseWhatIsNotTheirs } from './lay-claims';
-import { current, outOfDate, refuseUnlessOpen, rowOf, type LayRow, type LayState } from './lay-current';
+import {
+  current,
+  ordersOf,
+  outOfDate,
+  refuseUnlessOpen,
+  rowOf,
+  type LayRow,
+  type LayState
+} from './lay-current';
 import * as layFacts from './lay-facts';
 import type { ClothFacts, LayFacts } from './lay-facts';
+import * as layLengths from './lay-lengths';
 import * as layRevisions from './lay-revisions';
 import type { ReleasedRevision } from './lay-revisions';
 import { invalid, Problem } from './problem';
@@ -31,6 +40,8 @@ export interface Lay {
   readonly document: LayDocument;
   readonly panels: PanelBook;
   readonly order: LayFacts['order'];
+  /** Every order that it serves: more than one in a joint lay. */
+  readonly orders: LayFacts['orders'];
   readonly cloth: ClothFacts;
   readonly verdict: Verdict | null;
   readonly verdictVersion: number | null;
@@ -49,6 +60,7 @@ export async function read(scope: Scope, id: string): Promise<Lay> {
     document,
     panels,
     order: facts.order,
+    orders: facts.orders,
     cloth: facts.cloth,
     verdict: row.verdict === null ? null : (JSON.parse(row.verdict) as Verdict),
     verdictVersion: row.verdict_version,
@@ -59,32 +71,61 @@ export async function read(scope: Scope, id: string): Promise<Lay> {
 
 /**
  * A new lay of an order on one of its cloths, everything on the Rail: open cloth, right side up, 20 mm at each end, shears'
- * clearance. Without a name it is called 'Lay 1', 'Lay 2' and so on. Refused when nothing of the order is cut from that cloth.
+ * clearance. `with` joins further orders; `length` takes a roll or remnant. Without a name it is called 'Lay 1', 'Lay 2' and
+ * so on. Refused when nothing of one of the orders is cut from that cloth.
  */
 export async function create(
   scope: Scope,
-  input: { readonly orderId: string; readonly clothId: string; readonly name?: string },
+  input: {
+    readonly orderId: string;
+    readonly clothId: string;
+    readonly name?: string;
+    readonly with?: readonly string[];
+    readonly length?: string | null;
+  },
   now = Date.now()
 ): Promise<{ id: string }> {
-  const facts = await layFacts.read(scope, input.orderId, input.clothId);
-  if (facts.garments.length === 0)
-    throw invalid({ clothId: `Nothing of order ${facts.order.number} is cut from ${facts.cloth.name}.` });
+  const others = [...new Set(input.with ?? [])].filter((id) => id !== input.orderId);
+  const orders: [string, ...string[]] = [input.orderId, ...others];
+  const length =
+    input.length == null ? null : await layLengths.usableFor(scope, input.length, input.clothId, orders);
+  const facts = await layFacts.read(scope, orders, input.clothId, length);
+  for (const order of orders) {
+    const alone = orders.length === 1 ? facts : await layFacts.read(scope, [order], input.clothId);
+    if (alone.garments.length === 0)
+      throw invalid({ clothId: `Nothing of order ${alone.order.number} is cut from ${facts.cloth.name}.` });
+  }
   const document = newLay({
-    strip: layFacts.stripOf(facts.cloth),
+    strip: layFacts.stripWith(layFacts.stripOf(facts.cloth), facts),
     garments: facts.garments,
     book: facts.book,
     takes: facts.takes
   });
-  const name = input.name?.trim() || (await nextName(scope, input));
-  return insert(scope, { orderId: input.orderId, clothId: input.clothId, name, document }, now);
+  const name = input.name?.trim() || (await nextName(scope, input, others.length > 0));
+  return insert(
+    scope,
+    {
+      orderId: input.orderId,
+      clothId: input.clothId,
+      name,
+      document,
+      with: others,
+      length: length?.id ?? null
+    },
+    now
+  );
 }
 
 /** 'Lay 3' for the third lay of an order on a cloth. */
-async function nextName(scope: Scope, lay: { orderId: string; clothId: string }): Promise<string> {
+async function nextName(
+  scope: Scope,
+  lay: { orderId: string; clothId: string },
+  joint: boolean
+): Promise<string> {
   const [counted] = await database()('lays')
     .where({ studio_id: scope.studio, order_id: lay.orderId, cloth_id: lay.clothId })
     .count<{ count: number }[]>({ count: 'id' });
-  return `Lay ${Number(counted?.count ?? 0) + 1}`;
+  return `${joint ? 'Joint lay' : 'Lay'} ${Number(counted?.count ?? 0) + 1}`;
 }
 
 /** A copy of a lay (or of `document`, made from it) under another name, open, with the order's facts as they stand. */
@@ -104,7 +145,9 @@ export async function duplicate(
       orderId: row.order_id,
       clothId: row.cloth_id,
       name: name.trim(),
-      document: layFacts.withFacts(document, facts)
+      document: layFacts.withFacts(document, facts),
+      with: facts.orders.slice(1).map((order) => order.id),
+      length: facts.length?.id ?? null
     },
     now
   );
@@ -112,7 +155,14 @@ export async function duplicate(
 
 async function insert(
   scope: Scope,
-  lay: { orderId: string; clothId: string; name: string; document: LayDocument },
+  lay: {
+    orderId: string;
+    clothId: string;
+    name: string;
+    document: LayDocument;
+    with: readonly string[];
+    length: string | null;
+  },
   now: number
 ): Promise<{ id: string }> {
   const id = newId(now);
@@ -131,6 +181,9 @@ async function insert(
       created_at: now,
       updated_at: now
     });
+    for (const order of lay.with)
+      await trx('lay_orders').insert({ studio_id: scope.studio, lay_id: id, order_id: order });
+    await layLengths.tie(trx, scope, id, lay.length);
     await tieItems(trx, scope, id, lay.document);
   });
   return { id };
@@ -193,14 +246,50 @@ export async function save(scope: Scope, id: string, posted: Save, now = Date.no
  * differs gets a new version, so that an open Lay table learns of it at its next save.
  */
 export async function recount(scope: Scope, orderId: string, now = Date.now()): Promise<void> {
-  const open = await database()('lays')
-    .where({ studio_id: scope.studio, order_id: orderId, state: 'open' })
-    .select<{ id: string }[]>('id');
+  const open = await servedBy(database(), scope, [orderId])
+    .where({ 'lays.state': 'open' })
+    .select<{ id: string }[]>('lays.id');
   for (const { id } of open) {
     const { row, document } = await current(scope, id);
     if (same(document, openLayDocument(JSON.parse(row.document)))) continue;
     await store(scope, id, { version: row.version, saveId: newId(now), document }, now);
   }
+}
+
+/** Lays that serve one of `orders`, joint ones among them. */
+function servedBy(db: Knex, scope: Scope, orders: readonly string[]): Knex.QueryBuilder {
+  return db('lays')
+    .where({ 'lays.studio_id': scope.studio })
+    .where((either) => {
+      either
+        .whereIn('lays.order_id', orders)
+        .orWhereIn('lays.id', db('lay_orders').whereIn('order_id', orders).select('lay_id'));
+    });
+}
+
+/**
+ * Puts an open lay on another roll or remnant, or with null on cloth that is still to be bought. What lies on it stays where it
+ * is; the check says what no longer fits. 409 when the named version is not current, or the length is another order's.
+ */
+export async function setLength(
+  scope: Scope,
+  id: string,
+  wanted: { readonly version: number; readonly saveId: string; readonly length: string | null },
+  now = Date.now()
+): Promise<Saved> {
+  const { row, facts, document } = await current(scope, id);
+  refuseUnlessOpen(row);
+  const orders = facts.orders.map((order) => order.id);
+  const length =
+    wanted.length === null ? null : await layLengths.usableFor(scope, wanted.length, row.cloth_id, orders);
+  const there = await layFacts.read(scope, orders as [string, ...string[]], row.cloth_id, length);
+  return store(
+    scope,
+    id,
+    { version: wanted.version, saveId: wanted.saveId, document: layFacts.withFacts(document, there) },
+    now,
+    (trx) => layLengths.tie(trx, scope, id, wanted.length)
+  );
 }
 
 /** The posted document through the door; a refusal says what was got and what is expected. */
@@ -221,7 +310,8 @@ export async function store(
   scope: Scope,
   id: string,
   save: { readonly version: number; readonly saveId: string; readonly document: LayDocument },
-  now: number
+  now: number,
+  also: (trx: Knex) => Promise<void> = async () => {}
 ): Promise<Saved> {
   const outcome = await database().transaction(async (trx): Promise<Saved | null> => {
     const before = await earlierSave(trx, scope, id, save.saveId);
@@ -240,6 +330,7 @@ export async function store(
       saved_at: now
     });
     await tieItems(trx, scope, id, save.document);
+    await also(trx);
     return { version, savedAt: now };
   });
   if (outcome) return outcome;
@@ -285,19 +376,20 @@ export async function choose(scope: Scope, id: string): Promise<void> {
   });
 }
 
-/** Marks `row` as the chosen one of its order and cloth, within a transaction. */
+/** Marks `row` as the chosen one of its orders and cloth, within a transaction. */
 export async function markChosen(trx: Knex, scope: Scope, row: LayRow): Promise<void> {
-  const same = { studio_id: scope.studio, order_id: row.order_id, cloth_id: row.cloth_id };
-  await trx('lays').where(same).whereNot({ id: row.id }).update({ chosen: 0 });
-  await trx('lays')
-    .where({ ...same, id: row.id })
-    .update({ chosen: 1 });
+  const orders = await ordersOf(scope, row, trx);
+  await servedBy(trx, scope, orders)
+    .where({ cloth_id: row.cloth_id })
+    .whereNot({ id: row.id })
+    .update({ chosen: 0 });
+  await trx('lays').where({ studio_id: scope.studio, id: row.id }).update({ chosen: 1 });
 }
 
-/** Refuses when another lay of the same order and cloth is released: the pieces would be cut twice. */
+/** Refuses when another lay of one of the same orders and the cloth is released: the pieces would be cut twice. */
 export async function refuseBesideReleased(trx: Knex, scope: Scope, row: LayRow): Promise<void> {
-  const other = await trx('lays')
-    .where({ studio_id: scope.studio, order_id: row.order_id, cloth_id: row.cloth_id })
+  const other = await servedBy(trx, scope, await ordersOf(scope, row, trx))
+    .where({ cloth_id: row.cloth_id })
     .whereNot({ id: row.id })
     .whereNot({ state: 'open' })
     .first<{ name: string } | undefined>('name');

@@ -37,11 +37,7 @@ export async function byOrder(scope: Scope, orderIds: readonly string[]): Promis
       colour: 'cloths.colour',
       usableWidth: 'cloths.usable_width'
     });
-  const released = await database()('lays')
-    .where({ studio_id: scope.studio })
-    .whereIn('order_id', orderIds)
-    .whereIn('state', ['released', 'cut'])
-    .distinct<{ order_id: string; cloth_id: string }[]>('order_id', 'cloth_id');
+  const released = await releasedOf(scope, orderIds);
   const found = new Map<string, OrderCloth[]>();
   for (const row of rows) {
     const cloths = found.get(row.orderId) ?? [];
@@ -55,7 +51,7 @@ export async function byOrder(scope: Scope, orderIds: readonly string[]): Promis
         colour: row.colour,
         usableWidth: row.usableWidth,
         roles: [row.role],
-        released: released.some((lay) => lay.order_id === row.orderId && lay.cloth_id === row.id)
+        released: released.has(`${row.orderId}/${row.id}`)
       });
     else if (!known.roles.includes(row.role)) cloths[at] = { ...known, roles: [...known.roles, row.role] };
   }
@@ -63,4 +59,18 @@ export async function byOrder(scope: Scope, orderIds: readonly string[]): Promis
   const rank = ({ roles }: OrderCloth) => Math.min(...roles.map((role) => clothRoles.indexOf(role)));
   for (const cloths of found.values()) cloths.sort((a, b) => rank(a) - rank(b));
   return found;
+}
+
+/** 'order/cloth' of every released or cut lay that serves one of some orders. */
+async function releasedOf(scope: Scope, orderIds: readonly string[]): Promise<Set<string>> {
+  const lays = () =>
+    database()('lays').where({ 'lays.studio_id': scope.studio }).whereIn('lays.state', ['released', 'cut']);
+  const own = await lays()
+    .whereIn('lays.order_id', orderIds)
+    .distinct<{ order: string; cloth: string }[]>({ order: 'lays.order_id', cloth: 'lays.cloth_id' });
+  const joined = await lays()
+    .join('lay_orders', 'lay_orders.lay_id', 'lays.id')
+    .whereIn('lay_orders.order_id', orderIds)
+    .distinct<{ order: string; cloth: string }[]>({ order: 'lay_orders.order_id', cloth: 'lays.cloth_id' });
+  return new Set([...own, ...joined].map(({ order, cloth }) => `${order}/${cloth}`));
 }

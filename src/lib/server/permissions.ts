@@ -21,6 +21,8 @@ const table = {
   'orders: change': ['owner', 'patternMaker'],
   'cloths: see': ['owner', 'patternMaker', 'cutter'],
   'cloths: change': ['owner', 'patternMaker'],
+  /** Measuring rolls, remnants and flaws in, reserving them: whoever stands at the shelf. Prices are apart. */
+  'cloth lengths: change': ['owner', 'patternMaker', 'cutter'],
   'styles: see': ['owner', 'patternMaker', 'cutter'],
   'styles: change': ['owner', 'patternMaker'],
   'lays: see': ['owner', 'patternMaker', 'cutter'],

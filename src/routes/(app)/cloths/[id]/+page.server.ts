@@ -1,8 +1,11 @@
 import { redirect } from '@sveltejs/kit';
+import { formatDecimal } from '$lib/units/length';
 import { moneyDigits } from '$lib/units/money';
 import { clothForm } from '$lib/server/cloth-form';
+import * as clothLengths from '$lib/server/cloth-lengths';
+import * as clothWidths from '$lib/server/cloth-widths';
 import * as cloths from '$lib/server/cloths';
-import { readForm } from '$lib/server/forms';
+import { readForm, typedValues } from '$lib/server/forms';
 import { allow, orErrorPage } from '$lib/server/guard';
 import { may } from '$lib/server/permissions';
 import type { Actions, PageServerLoad } from './$types';
@@ -13,6 +16,10 @@ export const load: PageServerLoad = async (event) => {
   const { lengthUnit, currency } = event.locals.studio!;
   return {
     cloth,
+    lengths: await clothLengths.list(scope, cloth.id),
+    usedUp: await clothLengths.list(scope, cloth.id, { used: true }),
+    widths: await clothWidths.list(scope, cloth.id),
+    mayMeasure: may(scope.role, 'cloth lengths: change'),
     uses: await cloths.uses(scope, cloth.id),
     values: {
       name: cloth.name,
@@ -22,6 +29,10 @@ export const load: PageServerLoad = async (event) => {
       sides: cloth.sidesAlike ? 'alike' : 'different',
       nap: cloth.nap,
       colour: cloth.colour,
+      treatment: cloth.shrinkage.treatment,
+      shrinkWarp: formatDecimal(cloth.shrinkage.warp * 100, 2),
+      shrinkWeft: formatDecimal(cloth.shrinkage.weft * 100, 2),
+      buyStep: `${formatDecimal(cloth.buyStep, 3)} mm`,
       ...(cloth.price
         ? { price: moneyDigits(cloth.price.minor, currency), priceUnit: cloth.price.unit }
         : {}),
@@ -41,6 +52,19 @@ export const actions: Actions = {
     if (!form.ok) return form.refusal;
     await orErrorPage(cloths.update(scope, event.params.id, form.data));
     redirect(303, `/cloths/${event.params.id}?saved`);
+  },
+  addWidth: async (event) => {
+    const scope = allow(event, 'cloths: change');
+    const form = await readForm(event.request, clothWidths.widthForm(event.locals.studio!));
+    if (!form.ok) return form.refusal;
+    await orErrorPage(clothWidths.create(scope, event.params.id, form.data));
+    redirect(303, `/cloths/${event.params.id}#widths`);
+  },
+  removeWidth: async (event) => {
+    const scope = allow(event, 'cloths: change');
+    const values = typedValues(await event.request.formData());
+    await orErrorPage(clothWidths.remove(scope, event.params.id, values.width ?? ''));
+    redirect(303, `/cloths/${event.params.id}#widths`);
   },
   archive: async (event) => {
     const scope = allow(event, 'cloths: change');
