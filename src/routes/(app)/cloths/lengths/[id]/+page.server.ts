@@ -74,6 +74,7 @@ export const actions: Actions = {
   },
   photo: async (event) => {
     const scope = allow(event, 'cloth lengths: change');
+    await orErrorPage(clothLengths.read(scope, event.params.id));
     const form = await event.request.formData();
     const upload = form.get('photo');
     const values = { what: 'photo' };
@@ -81,7 +82,6 @@ export const actions: Actions = {
       return refuse(values, { photo: 'Choose a photo first.' });
     const { id } = event.params;
     return changed(id, values, async () => {
-      await clothLengths.read(scope, id);
       const bytes = new Uint8Array(await upload.arrayBuffer());
       const file = await createPicture(scope, { name: upload.name, bytes });
       await clothLengths.setPhoto(scope, id, file.id);
