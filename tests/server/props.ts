@@ -4,6 +4,7 @@ import sharp from 'sharp';
 import type { LayDocument } from '$lib/lay/document';
 import * as clothLengths from '$lib/server/cloth-lengths';
 import * as clothWidths from '$lib/server/cloth-widths';
+import * as clientLinks from '$lib/server/client-links';
 import { database } from '$lib/server/database';
 import * as guides from '$lib/server/guides';
 import { newId } from '$lib/server/ids';
@@ -15,11 +16,17 @@ import { JobRunner } from '$lib/server/job-runner';
 import * as layRelease from '$lib/server/lay-release';
 import * as lays from '$lib/server/lays';
 import { createPicture } from '$lib/server/pictures';
+import * as orderQuestions from '$lib/server/order-questions';
+import * as payments from '$lib/server/payments';
+import { emptySheet } from '$lib/server/price-sheet';
+import * as prices from '$lib/server/prices';
+import * as quotes from '$lib/server/quotes';
+import type { Scope } from '$lib/server/scope';
 import * as sessions from '$lib/server/sessions';
 import * as settleRuns from '$lib/server/settle-runs';
 import type { SettleBest } from '$lib/settle/run';
 import { cookieJar, type House } from './cast';
-import { good, makeOrder } from './lay-orders';
+import { good, makeOrder, type OrderRows } from './lay-orders';
 
 /*
  * The props of a house: one of each thing that a route can name, made through the real modules, so that every handler
@@ -56,6 +63,10 @@ export interface Props {
   readonly waitingGuide: string;
   /** A settle run that was stopped, its best on offer. */
   readonly settled: string;
+  /** A quote numbered 1 was sent; money in cash came in; the client asked through the link. */
+  readonly payment: string;
+  readonly clientLink: string;
+  readonly question: string;
   readonly invitation: string;
   /** The public id of a session of the owner. */
   readonly session: string;
@@ -172,6 +183,7 @@ export async function makeProps(house: House): Promise<Props> {
     .where({ id: settled })
     .update({ progress: JSON.stringify({ seconds: 1, evaluations: 1, turns: 1, best, ended: null }) });
   await jobs.stop(scope, settled);
+  const money = await makeMoney(scope, rows);
   const jar = cookieJar();
   await sessions.start(jar, house.owner.id, house.id, 'another browser of the owner');
   return {
@@ -198,7 +210,43 @@ export async function makeProps(house: House): Promise<Props> {
     guide,
     waitingGuide,
     settled,
+    ...money,
     invitation: await invitations.create(scope, { email: 'guest@far.example', role: 'cutter' }),
     session: (await sessions.list(house.owner.id))[0]!.publicId
   };
+}
+
+async function makeMoney(
+  scope: Scope,
+  rows: OrderRows
+): Promise<Pick<Props, 'payment' | 'clientLink' | 'question'>> {
+  const own = (byHand: number) => ({ byHand, own: false });
+  await prices.save(scope, rows.order, 0, {
+    ...emptySheet,
+    cloths: { [rows.main]: own(price.main), [rows.lining]: own(price.lining) }
+  });
+  const words = { dates: '', alterations: '', exclusions: '', terms: 'By hand.' };
+  await quotes.create(scope, rows.order, { validUntil: '2099-01-01', fittings: 2, ...words });
+  // Quoted already: sending would move the stage, and count the order's version.
+  await database()('orders').where({ id: rows.order }).update({ stage: 'quoted' });
+  const to = 'ada@far.example';
+  await quotes.send(scope, rows.order, 1, to);
+  const payment = newId();
+  await payments.recordByHand(scope, rows.order, {
+    id: payment,
+    kind: 'deposit',
+    method: 'cash',
+    amount: price.main,
+    day: '2026-05-30',
+    note: '',
+    receiptTo: null
+  });
+  const { id: clientLink } = await clientLinks.create(database(), scope, rows.order, to);
+  const question = newId();
+  await orderQuestions.ask(
+    { id: clientLink, studio: scope.studio, order: rows.order, sentTo: to },
+    question,
+    'When?'
+  );
+  return { payment, clientLink, question };
 }

@@ -49,6 +49,23 @@ const onLength = (own: Props, form?: Record<string, string>): Call =>
 const token = 'x'.repeat(43);
 const onOrder = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.order }, form ? { form } : {});
+const onQuote = (own: Props, form?: Record<string, string>): Call =>
+  params({ id: own.order, number: '1' }, form ? { form } : {});
+const byHand = (): Record<string, string> => ({
+  id: newId(),
+  kind: 'balance',
+  method: 'cash',
+  amount: '10',
+  day: '2026-05-31',
+  receiptTo: ''
+});
+const back = (payment: string): Record<string, string> => ({
+  id: newId(),
+  of: payment,
+  amount: '1',
+  method: 'cash',
+  day: '2026-05-31'
+});
 const onLay = (own: Props, json?: unknown): Call =>
   params({ id: own.lay }, json === undefined ? {} : { json });
 const save = (own: Props, document: unknown = own.layDocument): Call => ({
@@ -340,6 +357,58 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     call: (own) => params({ id: own.order }, { json: { clothId: own.cloth } }),
     foreign: (own, other) => ({ cloth: params({ id: own.order }, { json: { clothId: other.cloth } }) })
   },
+
+  // Price, quotes, money.
+  '/orders/[id]/price load': { access: 'prices: see', call: (own) => onOrder(own) },
+  '/orders/[id]/price ?/save': {
+    access: 'prices: change',
+    call: (own) => onOrder(own, { version: '1', rate: '40' })
+  },
+  '/orders/[id]/price ?/quote': {
+    access: 'prices: change',
+    call: (own) => onOrder(own, { validUntil: '2099-01-01', fittings: '2' })
+  },
+  '/orders/[id]/quotes/[number] load': { access: 'prices: see', call: (own) => onQuote(own) },
+  '/orders/[id]/quotes/[number] ?/send': {
+    access: 'prices: change',
+    call: (own) => onQuote(own, { to: 'client@far.example' })
+  },
+  '/orders/[id]/quotes/[number] ?/withdraw': { access: 'prices: change', call: (own) => onQuote(own, {}) },
+  '/api/orders/[id]/quotes/[number]/pdf GET': { access: 'prices: see', call: (own) => onQuote(own) },
+  '/orders/[id]/payments load': { access: 'prices: see', call: (own) => onOrder(own) },
+  '/orders/[id]/payments ?/record': {
+    access: 'payments: manage',
+    call: (own) => onOrder(own, byHand())
+  },
+  '/orders/[id]/payments ?/refund': {
+    access: 'payments: manage',
+    call: (own) => onOrder(own, back(own.payment)),
+    foreign: (own, other) => ({ payment: onOrder(own, back(other.payment)) })
+  },
+  '/orders/[id]/payments ?/sendLink': {
+    access: 'prices: change',
+    call: (own) => onOrder(own, { to: 'client@far.example' })
+  },
+  '/orders/[id]/payments ?/revoke': {
+    access: 'prices: change',
+    call: (own) => onOrder(own, { link: own.clientLink }),
+    foreign: (own, other) => ({ link: onOrder(own, { link: other.clientLink }) })
+  },
+  '/orders/[id]/payments ?/answered': {
+    access: 'prices: change',
+    call: (own) => onOrder(own, { question: own.question }),
+    foreign: (own, other) => ({ question: onOrder(own, { question: other.question }) })
+  },
+  // The client's page: its token is the key, client-page.test.ts walks it with real ones.
+  '/c/[token] load': { access: 'anyone', byCode: true, call: () => params({ token }) },
+  '/c/[token] ?/agree': { access: 'anyone', byCode: true, call: () => params({ token }, { form: {} }) },
+  '/c/[token] ?/decline': { access: 'anyone', byCode: true, call: () => params({ token }, { form: {} }) },
+  '/c/[token] ?/pay': { access: 'anyone', byCode: true, call: () => params({ token }, { form: {} }) },
+  '/c/[token] ?/ask': { access: 'anyone', byCode: true, call: () => params({ token }, { form: {} }) },
+  '/c/[token]/pdf GET': { access: 'anyone', byCode: true, call: () => params({ token }) },
+  '/c/back load': { access: 'anyone' },
+  // Signed by the card host, or refused: card-payments.test.ts.
+  '/api/payments/webhook POST': { access: 'anyone', call: () => ({ json: {} }) },
 
   // Styles and uploads.
   '/styles load': { access: 'styles: see' },

@@ -1,5 +1,6 @@
-import { fail, type ActionFailure } from '@sveltejs/kit';
+import { error, fail, type ActionFailure } from '@sveltejs/kit';
 import { z } from 'zod';
+import { Problem } from './problem';
 
 /*
  * Forms that work without scripts: what was typed goes through a schema; a refusal goes back with the words at each
@@ -59,3 +60,22 @@ export const address = z
   .toLowerCase()
   .max(254, 'This is longer than an e-mail address can be.')
   .pipe(z.email('This is not an e-mail address. One looks like mira@workroom.example.'));
+
+/**
+ * Runs a change of a page; a refusal at fields, or a conflict, goes back into the form with what was typed. What is not there
+ * is an error page.
+ */
+export async function orRefusal(
+  values: Record<string, string>,
+  change: () => Promise<unknown>
+): Promise<ActionFailure<Refused> | null> {
+  try {
+    await change();
+    return null;
+  } catch (refusal) {
+    if (!(refusal instanceof Problem)) throw refusal;
+    if (refusal.status === 404) error(404, refusal.message);
+    const fields = refusal.extra.fields as Record<string, string> | undefined;
+    return refuse(values, fields ?? { '': `${refusal.title}. ${refusal.detail}` }, refusal.status);
+  }
+}

@@ -99,7 +99,7 @@ async function sendOne(send: Sender, row: MessageRow, now: number) {
 /** One-time links are taken out of what is kept: whoever reads the table later must not be able to use them. */
 function withoutTokens(row: MessageRow): { body: string; html: string | null } {
   const strip = (text: string) =>
-    text.replace(/(\/(?:sign-up|reset|invitation|new-address)\/)[\w-]{43}/g, '$1(taken out after sending)');
+    text.replace(/(\/(?:sign-up|reset|invitation|new-address|c)\/)[\w-]{43}/g, '$1(taken out after sending)');
   return { body: strip(row.body), html: row.html === null ? null : strip(row.html) };
 }
 

@@ -31,6 +31,10 @@ const limits = {
   'mail: studio': new RateLimiterMemory({ points: 60, duration: hour }),
   /** Opening of one-time links from one place. */
   'link: place': new RateLimiterMemory({ points: 60, duration: 15 * minute }),
+  /** What a client does on their page: agreeing, paying, asking. */
+  'client: link': new RateLimiterMemory({ points: 40, duration: hour }),
+  /** Questions over one link: each is a mail to the studio. */
+  'question: link': new RateLimiterMemory({ points: 10, duration: hour }),
   /** Changes of any kind from one place: above what a workroom behind one address does by hand and by autosave. */
   'write: place': new RateLimiterMemory({ points: 1200, duration: minute })
 } as const;

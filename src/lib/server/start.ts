@@ -1,5 +1,6 @@
 import type { Knex } from 'knex';
 import { backUp } from './backup';
+import { startAsking } from './card-payments';
 import { config } from './config';
 import { migrate, openDatabase, pendingMigrations, useDatabase } from './database';
 import * as demo from './demo';
@@ -28,6 +29,7 @@ export async function startServer(): Promise<void> {
   const mail = senderOf(config);
   const stopSending = startSending(mail.send);
   const stopTidying = startTidying();
+  const stopAsking = startAsking();
   if (!process.env.ORIGIN && !import.meta.env.DEV)
     log.warn({ origin: config.origin }, 'ORIGIN is not set: links in mails may lead nowhere');
   if (config.smtpUrl === null) log.warn('No mail server is configured (WARPWISE_SMTP_URL): mails wait');
@@ -39,6 +41,7 @@ export async function startServer(): Promise<void> {
   atEnd(() => drained ?? runner.shutDown());
   atEnd(async () => {
     stopTidying();
+    await stopAsking();
     await stopSending();
     mail.close();
   });

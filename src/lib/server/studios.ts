@@ -123,6 +123,16 @@ export async function join(
     .merge({ role, disabled_at: null });
 }
 
+/** Where the owners of a studio are written to: about money, quotes and questions. */
+export async function ownerAddresses(scope: Scope, db: Knex = database()): Promise<string[]> {
+  return db('memberships')
+    .join('users', 'users.id', 'memberships.user_id')
+    .where({ studio_id: scope.studio, role: 'owner' })
+    .whereNull('disabled_at')
+    .orderBy('email')
+    .pluck('email');
+}
+
 /** What a person may enter: the studios where they are a member and not disabled. */
 export async function listOf(userId: string): Promise<{ id: string; name: string; role: Role }[]> {
   return database()('memberships')

@@ -6,6 +6,7 @@ import { allow, orErrorPage } from '$lib/server/guard';
 import * as layList from '$lib/server/lay-list';
 import * as lays from '$lib/server/lays';
 import { lineForm, orderForm } from '$lib/server/order-form';
+import { moneyOf } from '$lib/server/money-card';
 import * as orders from '$lib/server/orders';
 import { may } from '$lib/server/permissions';
 import { Problem } from '$lib/server/problem';
@@ -27,6 +28,7 @@ export const load: PageServerLoad = async (event) => {
     styles: mayChange ? await orders.styleChoices(scope) : [],
     cloths: mayChange ? await cloths.choices(scope) : [],
     stages: orders.stages,
+    money: may(scope.role, 'prices: see') ? await moneyOf(scope, order.id) : null,
     mayChange,
     mayLay: may(scope.role, 'lays: change'),
     lengthUnit: studio.lengthUnit,
