@@ -3,11 +3,12 @@ import { once } from 'node:events';
 import { createServer } from 'node:net';
 import { setTimeout as wait } from 'node:timers/promises';
 import { people, studioName } from '../../src/lib/server/demo/content.ts';
+import { startFakeCardHost } from './fake-card-host.ts';
 import { startFakeMail } from './fake-mail.ts';
 
 /*
- * `npm run demo`: the built product with the invented workroom and a local mail server, on this machine only. The
- * database stays between runs (data/demo.sqlite); delete the file to begin afresh.
+ * `npm run demo`: the built product with the invented workroom, a local mail server and a stand-in for the card host, on
+ * this machine only. The database stays between runs (data/demo.sqlite); delete the file to begin afresh.
  */
 
 /** The first port from `wanted` on that nobody listens on. */
@@ -29,6 +30,7 @@ async function freePort(wanted: number): Promise<number> {
 const port = await freePort(Number(process.env.PORT ?? 3000));
 const mail = await startFakeMail();
 const origin = `http://localhost:${port}`;
+const cards = await startFakeCardHost({ webhookUrl: `${origin}/api/payments/webhook` });
 const server = spawn(process.execPath, ['build'], {
   stdio: ['ignore', 'inherit', 'inherit'],
   env: {
@@ -36,6 +38,7 @@ const server = spawn(process.execPath, ['build'], {
     BODY_SIZE_LIMIT: '32M',
     WARPWISE_LOG_LEVEL: 'warn',
     ...process.env,
+    ...cards.env,
     PORT: String(port),
     ORIGIN: origin,
     WARPWISE_DATABASE: process.env.WARPWISE_DATABASE ?? 'data/demo.sqlite',
@@ -47,6 +50,7 @@ const server = spawn(process.execPath, ['build'], {
 });
 const ended = once(server, 'exit').then(async ([code]) => {
   await mail.close();
+  await cards.close();
   process.exitCode = typeof code === 'number' ? code : 0;
   return true;
 });
