@@ -50,12 +50,22 @@ export interface Bone {
   readonly length: Millimetres;
 }
 
+/** Something bought by length or by the piece. */
+export interface Supply {
+  readonly name: string;
+  readonly count: number;
+  /** null for what has no length. */
+  readonly length: Millimetres | null;
+}
+
 export interface Drafted {
   readonly panels: readonly Panel[];
   readonly sheet: Sheet;
   readonly seams: readonly Seam[];
   readonly totals: readonly Total[];
   readonly bones: readonly Bone[];
+  /** What else it takes: lacing, ribbon, tape, with lengths. */
+  readonly supplies: readonly Supply[];
   /** What the maker should look at: findings of the draft about this body. */
   readonly warnings: readonly string[];
   /** Where the garment can hurt. */
