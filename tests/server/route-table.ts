@@ -46,6 +46,14 @@ const lineForm = (own: Props, changes: Record<string, string> = {}) => ({
 const lengthForm = { kind: 'roll', name: 'Roll 9', length: '4 m', usableWidth: '98 cm' };
 const onLength = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.clothLength }, form ? { form } : {});
+const onOrderCloth = (own: Props, form?: Record<string, string>): Call =>
+  params({ id: own.order, cloth: own.cloth }, form ? { form } : {});
+function twoOrders(first: string, second: string): FormData {
+  const form = new FormData();
+  form.append('order', first);
+  form.append('order', second);
+  return form;
+}
 const token = 'x'.repeat(43);
 const onOrder = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.order }, form ? { form } : {});
@@ -409,6 +417,33 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/c/back load': { access: 'anyone' },
   // Signed by the card host, or refused: card-payments.test.ts.
   '/api/payments/webhook POST': { access: 'anyone', call: () => ({ json: {} }) },
+  '/orders/[id]/cloth/[cloth] load': { access: 'lays: see', call: (own) => onOrderCloth(own) },
+  '/orders/[id]/cloth/[cloth] ?/try': {
+    access: 'lays: change',
+    call: (own) => onOrderCloth(own, { question: 'widths', seconds: '5' })
+  },
+  '/orders/[id]/cloth/[cloth] ?/stop': {
+    access: 'lays: change',
+    call: (own) => onOrderCloth(own, { job: own.settled }),
+    foreign: (own, other) => ({ job: onOrderCloth(own, { job: other.settled }) })
+  },
+  '/orders/[id]/cloth/[cloth] ?/take': {
+    access: 'lays: change',
+    // Nothing was tried on it yet.
+    answers: [400],
+    call: (own) => onOrderCloth(own, { length: own.clothLength }),
+    foreign: (own, other) => ({ length: onOrderCloth(own, { length: other.clothLength }) })
+  },
+  '/cloths/[id]/joint load': { access: 'lays: change', call: (own) => params({ id: own.cloth }) },
+  '/cloths/[id]/joint ?/default': {
+    access: 'lays: change',
+    // One order alone is no joint lay.
+    answers: [400],
+    call: (own) => params({ id: own.cloth }, { form: { order: own.order } }),
+    foreign: (own, other) => ({
+      orders: params({ id: own.cloth }, { form: twoOrders(own.order, other.order) })
+    })
+  },
 
   // Styles and uploads.
   '/styles load': { access: 'styles: see' },

@@ -45,3 +45,21 @@ export function roundUpTo(length: Millimetres, step: Millimetres): Millimetres {
   const whole = micrometres(length);
   return Number(((whole + part - 1n) / part) * part) / 1000;
 }
+
+/**
+ * `total` minor units shared by `weights`, in their order: each its share rounded down, and what is then left goes, a unit each, to
+ * the largest remainders (of equal ones to the first), so that the parts add up to the total. Throws when no weight is above 0.
+ */
+export function shareCost(total: Minor, weights: readonly number[]): Minor[] {
+  const sum = weights.reduce((all, weight) => all + weight, 0);
+  if (!(sum > 0) || weights.some((weight) => weight < 0))
+    throw new RangeError('A cost is shared by weights of which at least one is above nothing');
+  const exact = weights.map((weight) => (total * weight) / sum);
+  const parts = exact.map(Math.floor);
+  const left = total - parts.reduce((all, part) => all + part, 0);
+  const byRemainder = exact
+    .map((part, i) => ({ i, remainder: part - Math.floor(part) }))
+    .sort((a, b) => b.remainder - a.remainder || a.i - b.i);
+  for (const { i } of byRemainder.slice(0, left)) parts[i]! += 1;
+  return parts;
+}

@@ -2,8 +2,9 @@ import type { Strip } from '$lib/cloth/strip';
 import { cosSin } from '$lib/geometry/placement';
 import type { Outline, Point } from '$lib/geometry/point';
 import { signedTurn } from '$lib/units/angle';
-import type { Degrees, Millimetres } from '$lib/units/measure';
+import type { Degrees, Millimetres, SquareMillimetres } from '$lib/units/measure';
 import type { LayDocument } from './document';
+import { CLEARANCE_SLACK } from './findings-between';
 import { panelOf, type LayPanel, type PanelBook } from './panel-book';
 import { pieceArea } from './piece-area';
 import { allowedTurns, grainTurns } from './turns';
@@ -11,12 +12,15 @@ import type { Readings } from './verdict';
 import { layeredWidth } from './yields';
 
 /*
- * Least length: the length below which no lay of these pieces can exist. Three bounds, each proven, the greatest
- * counts:
+ * Least length: the length below which no lay of these pieces can exist. Each bound is proven, the greatest counts:
  *  - area: pieces don't overlap, so they need at least their area;
+ *  - blade: each piece grown by half the clearance overlaps no other and stays in the strip grown as much. A piece of area A
+ *    grown by r covers at least (√A + r√π)² (Brunn and Minkowski), so that (width + c) × (length + c) is at least the sum of these;
  *  - longest: no piece can be shorter along the warp than it is at the best of its allowed turns;
- *  - side by side: where a piece covers more than half the width, no other such piece can lie at the same x, so
- *    these stretches follow one another along the warp.
+ *  - side by side: on an upright line each piece takes what it covers there and the clearance, all of them at most the width and
+ *    one clearance. A piece that takes more than j of k + 1 equal parts of that takes j of the k places that such pieces have
+ *    beside each other (a dual feasible function: Lueker 1983, Fekete and Schepers 2001). With k = 1 these are the stretches of
+ *    more than half the width, which follow one another along the warp.
  * It speaks of lays in which nothing overlaps and nothing hangs over a selvedge, not of the hundredth of a
  * millimetre that the check calls touching.
  */
@@ -46,10 +50,25 @@ export function leastLength(
     const length = shortest(panel, strip);
     if (length > best.length) best = { length, reason: { kind: 'longest', panel: panel.shape.name, length } };
   }
-  const queue = sideBySide(wanted, strip);
-  if (queue.length > best.length)
-    best = { length: queue.length, reason: { kind: 'side-by-side', panels: queue.panels } };
+  const grown = withBlade(wanted, strip);
+  if (grown > best.length)
+    best = { length: grown, reason: { kind: 'blade', area: total, width, clearance: strip.clearance } };
+  for (const places of PLACES) {
+    const { length, panels } = sideBySide(wanted, strip, places);
+    if (length > best.length) best = { length, reason: { kind: 'side-by-side', panels, places } };
+  }
   return { ...best, length: Math.max(0, Math.floor(best.length * 1000 + 1e-6) / 1000) };
+}
+
+/** The area of all needs, placed or not. */
+export function neededArea(
+  document: Pick<LayDocument, 'garments' | 'needs'>,
+  book: PanelBook
+): SquareMillimetres {
+  return wantedPanels(document, book).reduce(
+    (sum, { panel, count }) => sum + pieceArea(panel.shape) * count,
+    0
+  );
 }
 
 function wantedPanels(
@@ -152,25 +171,49 @@ function convexHull(points: Outline): Point[] {
   return [...chain(sorted), ...chain(sorted.toReversed())];
 }
 
+/** How many places side by side are looked at; more rarely bind. */
+const PLACES = [1, 2, 3, 4] as const;
+
+/** What the check surely keeps between two pieces. */
+const surely = (clearance: Millimetres): Millimetres => Math.max(0, clearance - CLEARANCE_SLACK);
+
+/** What the pieces need with half the clearance around each; 0 where the cloth does not lie in one zone without a fold. */
+function withBlade(wanted: readonly Wanted[], strip: Strip): Millimetres {
+  const [zone] = strip.spread;
+  if (!zone || strip.spread.length > 1 || zone.fold !== 'none') return 0;
+  const clearance = surely(strip.clearance);
+  const rim = (clearance / 2) * Math.sqrt(Math.PI);
+  const total = wanted.reduce(
+    (sum, { panel, count }) =>
+      sum + ((Math.sqrt(pieceArea(panel.shape)) + rim) ** 2 * count) / zone.layers.length,
+    0
+  );
+  return total / (zone.to - zone.from + clearance) - clearance;
+}
+
 /**
- * The stretches of all pieces that cover more than half the width, one after the other. On several layers a placement
- * gives as many pieces. Panels that may turn through a range count for nothing here: their stretch at the best turn
- * is not worked out.
+ * What the pieces need when pieces that take more than a (`places` + 1)th of the width have so many places beside each other. On
+ * several layers a placement gives as many pieces. Panels that may turn through a range count for nothing here: their
+ * stretch at the best turn is not worked out.
  */
 function sideBySide(
   wanted: readonly Wanted[],
-  strip: Strip
+  strip: Strip,
+  places: number
 ): { length: Millimetres; panels: readonly string[] } {
   const [zone] = strip.spread;
   if (!zone || strip.spread.length > 1) return { length: 0, panels: [] };
-  // Two pieces at the same x also have the clearance between them.
-  const half = (zone.to - zone.from - strip.clearance) / 2;
+  const clearance = surely(strip.clearance);
+  const whole = zone.to - zone.from + clearance;
+  const parts = Array.from({ length: places }, (_, j) => ((j + 1) * whole) / (places + 1) - clearance);
   let length = 0;
   const panels: string[] = [];
   for (const { panel, count } of wanted) {
     const turns = allowedTurns(panel, strip);
     if (!turns || turns.length === 0 || panel.grainTolerance > 0) continue;
-    const stretch = Math.min(...turns.map((turn) => wideStretch(panel, turn, half)));
+    const stretch = Math.min(
+      ...turns.map((turn) => parts.reduce((sum, part) => sum + wideStretch(panel, turn, part), 0) / places)
+    );
     if (stretch <= 0) continue;
     length += (stretch * count) / zone.layers.length;
     panels.push(panel.shape.name);

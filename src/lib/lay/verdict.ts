@@ -25,7 +25,14 @@ export type LeastLengthReason =
   | { readonly kind: 'nothing' }
   | { readonly kind: 'area'; readonly area: SquareMillimetres; readonly width: Millimetres }
   | { readonly kind: 'longest'; readonly panel: string; readonly length: Millimetres }
-  | { readonly kind: 'side-by-side'; readonly panels: readonly string[] };
+  | {
+      readonly kind: 'blade';
+      readonly area: SquareMillimetres;
+      readonly width: Millimetres;
+      readonly clearance: Millimetres;
+    }
+  /** `places`: so many of these pieces at most lie beside each other. */
+  | { readonly kind: 'side-by-side'; readonly panels: readonly string[]; readonly places?: number };
 
 export const findingKinds = [
   'overlap',

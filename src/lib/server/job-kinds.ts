@@ -1,4 +1,5 @@
 import * as addressChanges from './address-changes';
+import * as clothTrialJob from './cloth-trial-job';
 import * as guides from './guides';
 import { registerJob } from './jobs';
 import * as resets from './resets';
@@ -12,4 +13,5 @@ export function registerAllJobs(): void {
   registerJob('address-change', addressChanges.job);
   registerJob('guide', guides.job);
   registerJob('settle', settleJob.job);
+  registerJob('cloth-trial', clothTrialJob.job);
 }

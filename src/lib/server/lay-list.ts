@@ -15,6 +15,8 @@ export interface ListedLay {
   readonly chosen: boolean;
   readonly updatedAt: number;
   readonly order: { readonly id: string; readonly number: number; readonly clientName: string };
+  /** Numbers of all orders that it serves: more than one in a joint lay. */
+  readonly orders: readonly number[];
   readonly cloth: { readonly id: string; readonly name: string; readonly colour: string };
   /** What the server last found; null before the first check. */
   readonly verdict: {
@@ -84,7 +86,7 @@ function query(scope: Scope) {
     });
 }
 
-function listedOf(row: LayRow): ListedLay {
+function listedOf(row: LayRow, joined: ReadonlyMap<string, readonly number[]>): ListedLay {
   const verdict = row.verdict === null ? null : verdictSchema.parse(JSON.parse(row.verdict));
   return {
     id: row.id,
@@ -93,6 +95,7 @@ function listedOf(row: LayRow): ListedLay {
     chosen: row.chosen === 1,
     updatedAt: row.updated_at,
     order: { id: row.order_id, number: row.order_number, clientName: row.client_name },
+    orders: [row.order_number, ...(joined.get(row.id) ?? [])],
     cloth: { id: row.cloth_id, name: row.cloth_name, colour: row.colour },
     verdict: verdict && {
       efficiency: verdict.readings.efficiency,
@@ -119,7 +122,27 @@ export async function list(
   if (number) lays.where({ 'orders.number': Number(number) });
   else containing(lays, ['orders.client_name', 'cloths.name', 'lays.name'], listing.search);
   const page = await pageOf<LayRow, LaySort>(lays, listing, sortColumns, 'lays.id');
-  return { ...page, rows: page.rows.map(listedOf) };
+  const joined = await joinedOrders(scope, page.rows);
+  return { ...page, rows: page.rows.map((row) => listedOf(row, joined)) };
+}
+
+/** Numbers of the orders that joint lays serve beside their first, by lay. */
+async function joinedOrders(
+  scope: Scope,
+  rows: readonly { readonly id: string }[]
+): Promise<Map<string, number[]>> {
+  const found = await database()('lay_orders')
+    .join('orders', 'orders.id', 'lay_orders.order_id')
+    .where({ 'lay_orders.studio_id': scope.studio })
+    .whereIn(
+      'lay_orders.lay_id',
+      rows.map(({ id }) => id)
+    )
+    .orderBy('orders.number')
+    .select<{ lay: string; number: number }[]>({ lay: 'lay_orders.lay_id', number: 'orders.number' });
+  const joined = new Map<string, number[]>();
+  for (const { lay, number } of found) joined.set(lay, [...(joined.get(lay) ?? []), number]);
+  return joined;
 }
 
 /** Every lay of an order, joint ones among them, the chosen ones first. */
@@ -131,7 +154,8 @@ export async function ofOrder(scope: Scope, orderId: string): Promise<ListedLay[
         .orWhereIn('lays.id', database()('lay_orders').where({ order_id: orderId }).select('lay_id'));
     })
     .orderBy([{ column: 'lays.chosen', order: 'desc' }, 'lays.created_at']);
-  return rows.map(listedOf);
+  const joined = await joinedOrders(scope, rows);
+  return rows.map((row) => listedOf(row, joined));
 }
 
 /** The lays that serve a line of an order: what a change of the line touches. */

@@ -1,6 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { clothCost, pricePer, roundUpTo } from '$lib/cloth/cost';
+import { clothCost, shareCost, pricePer, roundUpTo } from '$lib/cloth/cost';
+import { runs } from '../../runs';
 
 describe('what a length costs', () => {
   it('is exact, rounded once, half up', () => {
@@ -45,5 +46,28 @@ describe('rounding up what is bought', () => {
     expect(roundUpTo(228.6 * 7, 228.6)).toBe(1600.2);
     expect(roundUpTo(0, 100)).toBe(0);
     expect(() => roundUpTo(10, 0)).toThrow(RangeError);
+  });
+});
+
+describe('a shared cost', () => {
+  it('adds up to the whole, whatever the weights', () => {
+    expect(shareCost(100, [1, 1, 1])).toEqual([34, 33, 33]);
+    expect(shareCost(10, [0, 2, 3])).toEqual([0, 4, 6]);
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 0, max: 10_000_000 }),
+        fc.array(fc.double({ min: 0.01, max: 1e7, noNaN: true }), { minLength: 1, maxLength: 12 }),
+        (total, weights) => {
+          const parts = shareCost(total, weights);
+          const sum = weights.reduce((all, one) => all + one, 0);
+          expect(parts.reduce((all, one) => all + one, 0)).toBe(total);
+          parts.forEach((part, i) =>
+            expect(Math.abs(part - (total * weights[i]!) / sum)).toBeLessThan(1.001)
+          );
+        }
+      ),
+      { seed: 3, numRuns: runs(300) }
+    );
+    expect(() => shareCost(10, [0, 0])).toThrow(RangeError);
   });
 });

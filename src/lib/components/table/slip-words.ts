@@ -60,8 +60,19 @@ export function readingWords(readings: Readings, unit: LengthUnit): ReadingWords
 
 /** Why no lay of these pieces can be shorter. */
 export function leastLengthWords(readings: Readings, book: PanelBook, unit: LengthUnit): string {
-  const name = (panel: string): string => panelNamed(book, panel)?.shape.name ?? panel;
-  const { reason } = readings.leastLength;
+  return leastLengthReason(
+    readings.leastLength.reason,
+    (panel) => panelNamed(book, panel)?.shape.name ?? panel,
+    unit
+  );
+}
+
+/** The same where the panels are named by other means. */
+export function leastLengthReason(
+  reason: Readings['leastLength']['reason'],
+  name: (panel: string) => string,
+  unit: LengthUnit
+): string {
   switch (reason.kind) {
     case 'nothing':
       return 'Nothing is needed of this cloth.';
@@ -69,8 +80,13 @@ export function leastLengthWords(readings: Readings, book: PanelBook, unit: Leng
       return `The pieces cover ${formatDecimal(reason.area / 1e6, 2)} m², the cloth is ${short(reason.width, unit)} wide.`;
     case 'longest':
       return `${name(reason.panel)} alone is this long.`;
-    case 'side-by-side':
-      return `${reason.panels.map(name).join(' and ')} can’t lie beside each other.`;
+    case 'blade':
+      return `The pieces cover ${formatDecimal(reason.area / 1e6, 2)} m², each with half of ${formatDecimal(reason.clearance, 1)} mm for the blade around it; the cloth is ${short(reason.width, unit)} wide.`;
+    case 'side-by-side': {
+      const { panels, places = 1 } = reason;
+      if (places === 1) return `${panels.map(name).join(' and ')} can’t lie beside each other.`;
+      return `At most ${places} of ${panels.map(name).join(', ')} fit beside each other, wide ones fewer.`;
+    }
   }
 }
 

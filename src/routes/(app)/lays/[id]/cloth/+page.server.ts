@@ -3,6 +3,7 @@ import * as clothLengths from '$lib/server/cloth-lengths';
 import { refuse, typedValues } from '$lib/server/forms';
 import { allow, orErrorPage } from '$lib/server/guard';
 import { newId } from '$lib/server/ids';
+import * as jointLays from '$lib/server/joint-lays';
 import * as lays from '$lib/server/lays';
 import { Problem } from '$lib/server/problem';
 import type { Actions, PageServerLoad } from './$types';
@@ -20,6 +21,8 @@ export const load: PageServerLoad = async (event) => {
       ...length,
       forOthers: length.order !== null && !orders.includes(length.order.id)
     })),
+    shares: lay.orders.length > 1 ? await jointLays.sharesOf(scope, lay) : [],
+    currency: event.locals.studio!.currency,
     lengthUnit: event.locals.studio!.lengthUnit
   };
 };
