@@ -1,5 +1,5 @@
 import { sideUp, type Given, type Strip } from '$lib/cloth/strip';
-import type { Box } from '$lib/geometry/point';
+import type { Box, Outline, Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
 import { formatDecimal, type LengthUnit } from '$lib/units/length';
 import { line, pen, words, type Mark } from './drawing';
@@ -22,6 +22,10 @@ export interface ClothFrame {
   readonly extent: Box;
   readonly near: 'fold' | 'selvedge';
   readonly far: 'fold' | 'selvedge';
+  /** Flaws, each as the box that no piece may touch. */
+  readonly flaws: readonly Box[];
+  /** The edge of an odd remnant; null for a whole width. */
+  readonly edge: Outline | null;
 }
 
 /** The frame of a lay. A fold has no margin beside it; what the full width is wider is shared by the selvedges. */
@@ -51,8 +55,38 @@ export function clothFrame(strip: Strip, pieces: readonly LaidPiece[], lengthUse
       cloth
     ),
     near,
-    far
+    far,
+    flaws: strip.flaws.map((flaw) => {
+      const reach = { x: flaw.along / 2 + flaw.radius, y: flaw.across / 2 + flaw.radius };
+      return {
+        minX: flaw.x - reach.x,
+        minY: flaw.y - reach.y,
+        maxX: flaw.x + reach.x,
+        maxY: flaw.y + reach.y
+      };
+    }),
+    edge: strip.given?.outline ?? null
   };
+}
+
+const FLAW_PEN = pen(0.3, [2, 1]);
+
+/** The flaws crossed out and the edge of an odd remnant, through `at` to the paper. */
+export function drawFlawsAndEdge(frame: ClothFrame, at: (point: Point) => Point = (point) => point): Mark[] {
+  const crossed = frame.flaws.flatMap(({ minX, minY, maxX, maxY }) => {
+    const corners = [
+      { x: minX, y: minY },
+      { x: maxX, y: minY },
+      { x: maxX, y: maxY },
+      { x: minX, y: maxY }
+    ].map(at);
+    return [
+      line(corners, FLAW_PEN, true),
+      line([corners[0]!, corners[2]!], FLAW_PEN),
+      line([corners[1]!, corners[3]!], FLAW_PEN)
+    ];
+  });
+  return frame.edge ? [...crossed, line(frame.edge.map(at), EDGE_PEN, true)] : crossed;
 }
 
 export const EDGE_PEN = pen(0.35);
@@ -85,7 +119,8 @@ export function drawFrame(frame: ClothFrame, unit: LengthUnit): Mark[] {
   if (cloth.maxY > usableWidth) marks.push(along(cloth.maxY, OUTER_PEN));
   if (cloth.minX < 0) marks.push(across(cloth.minX, OUTER_PEN));
   if (cloth.maxX > lengthUsed) marks.push(across(cloth.maxX, OUTER_PEN));
-  marks.push(...tape(frame, unit));
+  marks.push(...tape(frame, unit), ...drawFlawsAndEdge(frame));
+  for (const { minX, maxY } of frame.flaws) marks.push(words({ x: minX, y: maxY + 1.4 }, 'flaw', 3.6));
   for (let x = WORDS_STEP / 4; x < lengthUsed; x += WORDS_STEP) {
     marks.push(edgeWords({ x, y: 0 }, `near ${frame.near}`, 0, frame.near === 'fold' ? 0 : -cloth.minY, -1));
     marks.push(edgeWords({ x, y: usableWidth }, `far ${frame.far}`, 0, cloth.maxY - usableWidth, 1));

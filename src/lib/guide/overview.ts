@@ -1,7 +1,7 @@
 import { boundingBox } from '$lib/geometry/polygon';
 import type { Point } from '$lib/geometry/point';
 import { formatDecimal, type LengthUnit } from '$lib/units/length';
-import type { ClothFrame } from './cloth-frame';
+import { drawFlawsAndEdge, type ClothFrame } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
 import { arrowHead, line, pen, surface, words, type Lettering, type Mark, type Page } from './drawing';
 import type { GuideInput } from './guide-input';
@@ -160,6 +160,7 @@ function drawStretch(page: DeskPage, frame: ClothFrame, pieces: readonly LaidPie
     [frame.lengthUsed, LINE]
   ] as const)
     marks.push(line([at({ x, y: cloth.minY }), at({ x, y: cloth.maxY })], withPen));
+  marks.push(...drawFlawsAndEdge(frame, at));
   page.drawings.push({
     origin: { x: 0, y: 0 },
     scale: 1,

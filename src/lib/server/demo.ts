@@ -5,8 +5,11 @@ import type { LayDocument } from '$lib/lay/document';
 import { PANEL_SET_SCHEMA, panelSetSchema } from '$lib/pattern/panel';
 import * as accounts from './accounts';
 import * as audit from './audit';
+import * as clothLengths from './cloth-lengths';
+import * as clothWidths from './cloth-widths';
 import * as cloths from './cloths';
 import { database } from './database';
+import * as shelf from './demo/cloth-shelf';
 import * as content from './demo/content';
 import { placeAll } from './demo/first-fit';
 import { spoil } from './demo/spoil';
@@ -58,6 +61,7 @@ export async function fill(scope: Scope, now: number = Date.now()): Promise<stri
     const id = demoId(scope.studio, `cloth ${key}`);
     if (!(await has('cloths', scope, id))) await cloths.create(scope, cloth, { id, now });
   }
+  await fillShelf(scope, now);
   const studio = await studios.read(scope);
   const today = Date.parse(`${dayAt(now, studio.timeZone)}T00:00:00Z`);
   let added = false;
@@ -84,6 +88,21 @@ export async function fill(scope: Scope, now: number = Date.now()): Promise<stri
   }
   if (added) await audit.recordBy(scope, 'demo: filled', scope.studio);
   return demoId(scope.studio, `order ${content.firstOrder}`);
+}
+
+/** Rolls, remnants and the widths that cloths are sold in. */
+async function fillShelf(scope: Scope, now: number): Promise<void> {
+  for (const { key, cloth, input, flaws } of shelf.lengths) {
+    const id = demoId(scope.studio, `length ${key}`);
+    if (await has('cloth_lengths', scope, id)) continue;
+    await clothLengths.create(scope, demoId(scope.studio, `cloth ${cloth}`), input, { id, now });
+    for (const flaw of flaws) await clothLengths.addFlaw(scope, id, flaw, now);
+  }
+  for (const { key, cloth, width } of shelf.widths) {
+    const id = demoId(scope.studio, `width ${key}`);
+    if (await has('cloth_widths', scope, id)) continue;
+    await clothWidths.create(scope, demoId(scope.studio, `cloth ${cloth}`), width, { id });
+  }
 }
 
 async function has(table: string, scope: Scope, id: string): Promise<boolean> {
