@@ -82,7 +82,7 @@ function layOf(pitchX: number, pitchY: number): LayDocument {
     locked: false
   }));
   return {
-    schema: 2,
+    schema: 3,
     strip: {
       spread: openSpread(1500),
       usableWidth: 1500,

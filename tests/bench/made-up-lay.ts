@@ -134,7 +134,7 @@ export function madeUpLay(pieces: number, points: number, loose = 0, seed = 7): 
   return {
     panels,
     document: {
-      schema: 2,
+      schema: 3,
       strip: {
         spread: openSpread(width),
         usableWidth: width,

@@ -184,7 +184,13 @@ describe('saving', () => {
         rules: {
           matchTolerance: 1,
           mayCoverFlaws: [],
-          matchGroups: [{ id: 'm', points: [{ garment: `${foreign.item}:1`, panel: 'front', point: 'x' }] }]
+          matchGroups: [
+            {
+              id: 'm',
+              mirrored: false,
+              points: [{ garment: `${foreign.item}:1`, panel: 'front', point: 'x' }]
+            }
+          ]
         }
       }
     ];
@@ -244,7 +250,11 @@ describe('when the order changes under a lay', () => {
     const point = { garment: laid.garments[0]!.id, panel: 'front', point: 'waist' };
     const document: LayDocument = {
       ...laid,
-      rules: { matchTolerance: 1, mayCoverFlaws: [], matchGroups: [{ id: 'm', points: [point] }] }
+      rules: {
+        matchTolerance: 1,
+        mayCoverFlaws: [],
+        matchGroups: [{ id: 'm', mirrored: false, points: [point] }]
+      }
     };
     await lays.save(scope, id, { version: 1, saveId: newId(), document });
     await cast.db('order_items').where({ id: rows.item }).delete();

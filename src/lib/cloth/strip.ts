@@ -18,14 +18,18 @@ export const layerSchema = z.object({
 });
 export type Layer = z.infer<typeof layerSchema>;
 
-/** A stretch of the width that has the same layers throughout. The first form of the product knows one zone of one layer. */
+/**
+ * Where a zone is folded: along its near or far side, along both (tubular cloth), or across, at the cloth's start.
+ */
+export const foldSides = ['none', 'near', 'far', 'both', 'start'] as const;
+
+/** A stretch of the width that has the same layers throughout. What each spread is made of: `spread.ts`. */
 export const zoneSchema = z.object({
   from: mm,
   to: mm,
-  /** Top ply first. */
-  layers: z.array(layerSchema).min(1).max(200),
-  /** Which side of the zone is a fold of the cloth. */
-  fold: z.enum(['none', 'near', 'far'])
+  /** Top ply first. None: nothing may be laid there, under the selvedge of a ply that is folded over. */
+  layers: z.array(layerSchema).max(200),
+  fold: z.enum(foldSides)
 });
 export type Zone = z.infer<typeof zoneSchema>;
 
@@ -97,6 +101,11 @@ export const stripSchema = z.object({
   clearance: z.number().finite().min(0).max(100)
 });
 export type Strip = z.infer<typeof stripSchema>;
+
+/** How wide the cloth lies on the table, margins excluded: where its last zone ends. Open cloth lies as wide as it is usable. */
+export function laidWidth(strip: Pick<Strip, 'spread'>): number {
+  return strip.spread[strip.spread.length - 1]!.to;
+}
 
 /** Which side of the cloth looks up: that of the top ply nearest to y = 0. */
 export function sideUp(strip: Strip): 'right' | 'wrong' {

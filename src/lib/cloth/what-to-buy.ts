@@ -18,6 +18,8 @@ export const noSplices: Splices = { count: 0, each: 0 };
 export interface BuyQuestion {
   /** Greatest x of the placed pieces: ends excluded. */
   readonly lengthUsed: Millimetres;
+  /** Plies that are spread one on the other, each as long as the lay with its ends; 1 where it is left out. */
+  readonly lengths?: number;
   readonly endAllowance: { readonly start: Millimetres; readonly end: Millimetres };
   readonly splices: Splices;
   readonly reserve: Millimetres;
@@ -33,6 +35,8 @@ export interface BuyTerms {
   readonly lengthUsed: Millimetres;
   readonly start: Millimetres;
   readonly end: Millimetres;
+  /** Length and ends of every ply beside the first. */
+  readonly furtherPlies: Millimetres;
   readonly splices: Millimetres;
   readonly reserve: Millimetres;
   /** What shrinking the cloth before it is laid takes. */
@@ -47,7 +51,9 @@ export interface BuyTerms {
 export function whatToBuy(question: BuyQuestion): BuyTerms {
   const { lengthUsed, endAllowance, reserve, shrinkage, wholeRepeats, step } = question;
   const splices = question.splices.count * question.splices.each;
-  const laid = lengthUsed + endAllowance.start + endAllowance.end + splices + reserve;
+  const ply = lengthUsed + endAllowance.start + endAllowance.end;
+  const furtherPlies = ply * ((question.lengths ?? 1) - 1);
+  const laid = ply + furtherPlies + splices + reserve;
   const bought = asBought(shrinkage, laid);
   const repeats = wholeRepeats === null ? 0 : wholeRepeatsOf(bought, asBought(shrinkage, wholeRepeats));
   const whole = Math.max(bought, repeats);
@@ -55,6 +61,7 @@ export function whatToBuy(question: BuyQuestion): BuyTerms {
     lengthUsed,
     start: endAllowance.start,
     end: endAllowance.end,
+    furtherPlies,
     splices,
     reserve,
     shrinkage: bought - laid,

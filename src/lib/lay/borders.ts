@@ -1,4 +1,4 @@
-import type { Strip } from '$lib/cloth/strip';
+import { laidWidth, type Strip } from '$lib/cloth/strip';
 import type { Box } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
 
@@ -12,7 +12,7 @@ export function overhang(box: Box, strip: Strip): Readonly<Record<StripSide, Mil
     start: Math.max(0, -box.minX),
     end: strip.length === null ? 0 : Math.max(0, box.maxX - strip.length),
     near: Math.max(0, -box.minY),
-    far: Math.max(0, box.maxY - strip.usableWidth)
+    far: Math.max(0, box.maxY - laidWidth(strip))
   };
 }
 
@@ -22,11 +22,19 @@ export function roomTo(box: Box, strip: Strip): Readonly<Record<StripSide, Milli
     start: box.minX,
     end: (strip.length ?? Infinity) - box.maxX,
     near: box.minY,
-    far: strip.usableWidth - box.maxY
+    far: laidWidth(strip) - box.maxY
   };
 }
 
-/** A side as the person reads it. */
+/** A side as the person reads it on this spread: a selvedge may be a fold. */
+export function sideOn(side: StripSide, { spread }: Pick<Strip, 'spread'>): string {
+  const { fold } = side === 'far' ? spread.at(-1)! : spread[0]!;
+  if (fold === 'both' && (side === 'near' || side === 'far')) return `the ${side} fold`;
+  if (side === fold) return 'the fold';
+  return sideName[side];
+}
+
+/** A side of open cloth. */
 export const sideName: Readonly<Record<StripSide, string>> = {
   start: 'the start of the cloth',
   end: 'the end of the cloth',

@@ -54,6 +54,11 @@ export const layRulesSchema = z.object({
     .array(
       z.object({
         id,
+        /**
+         * false: all points fall on the same place of the repeat, so that the pattern runs on across the seam (centre fronts, a pocket on
+         * its front). true: flipped pieces show the repeat mirrored, as the two sleeves of a pair do.
+         */
+        mirrored: z.boolean(),
         /** Match points that must fall on the same place of the repeat. */
         points: z.array(z.object({ garment: id, panel: id, point: id })).max(50)
       })
@@ -64,7 +69,7 @@ export const layRulesSchema = z.object({
   mayCoverFlaws: z.array(z.object({ styleVersion: id, panel: id })).max(500)
 });
 
-export const LAY_SCHEMA = 2;
+export const LAY_SCHEMA = 3;
 export const layDocumentSchema = z.object({
   schema: z.literal(LAY_SCHEMA),
   strip: stripSchema,

@@ -1,8 +1,10 @@
+import type { Strip } from '$lib/cloth/strip';
 import { boundingBox } from '$lib/geometry/polygon';
 import { placeOutline, snapPlacement, type Placement } from '$lib/geometry/placement';
 import type { Box, Point } from '$lib/geometry/point';
 import type { LayDocument, LayPlacement } from './document';
 import { panelOfPlacement } from './needs';
+import { laidShape } from './on-fold';
 import type { LayPanel, PanelBook } from './panel-book';
 import { nameOf, pieces } from './wording';
 
@@ -58,9 +60,10 @@ export function subject(document: LayDocument, book: PanelBook, { free, locked }
   return locked > 0 ? `${what} (${locked} locked, left alone)` : what;
 }
 
-/** The box of a panel where `placement` lays it. */
-export function boxOf(panel: LayPanel, placement: Placement): Box {
-  return boundingBox(placeOutline(panel.shape.cut, placement));
+/** The box of a panel where `placement` lays it; of the whole piece where no strip is given, else of what is cut there. */
+export function boxOf(panel: LayPanel, placement: Placement, strip?: Pick<Strip, 'spread'>): Box {
+  const shape = strip ? laidShape(panel, placement, strip) : panel.shape;
+  return boundingBox(placeOutline(shape.cut, placement));
 }
 
 /** The middle of the box around `boxes`. */

@@ -3,7 +3,7 @@ import { outside as reachOutside } from '$lib/geometry/outside';
 import { growBox } from '$lib/geometry/polygon';
 import { outlineOf } from '$lib/geometry/prepared';
 import { TOUCHING } from '$lib/geometry/tolerance';
-import { overhang, sideName, type StripSide } from './borders';
+import { overhang, sideOn, type StripSide } from './borders';
 import type { LayDocument } from './document';
 import { CLEARANCE_SLACK } from './findings-between';
 import { flawBox, mayCoverFlaws, roomToFlaw } from './flaw-room';
@@ -62,7 +62,7 @@ function outside(document: LayDocument, book: PanelBook, piece: PlacedPiece): Fi
         side === 'near' || side === 'far' ? 'outside-width' : 'outside-length',
         { value: over[side], unit: 'mm' },
         outermost(outlineOf(piece.outline), side),
-        `${nameOf(document, book, piece.placement)} hangs ${millimetres(over[side])} over ${sideName[side]}.`
+        `${nameOf(document, book, piece.placement)} hangs ${millimetres(over[side])} over ${sideOn(side, document.strip)}.`
       )
     );
 }

@@ -97,7 +97,7 @@ function liveOf(document: LayDocument, book: PanelBook, all: readonly PlacedPiec
         const piece = byId.get(id);
         if (!piece) throw new RangeError(`No piece ${id} on the cloth with an outline that is known`);
         const placement = placements[i]!;
-        const placed = placedOutline(piece.panel, placement);
+        const placed = placedOutline(piece.panel, placement, strip);
         moving.set(id, placed);
         return { piece, placement, outline: placed };
       });
@@ -140,7 +140,9 @@ function liveOf(document: LayDocument, book: PanelBook, all: readonly PlacedPiec
       return liveOf(
         next,
         nextBook,
-        nextBook === book && next.garments === document.garments
+        nextBook === book &&
+          next.garments === document.garments &&
+          next.strip.spread === document.strip.spread
           ? placedPieces(next, nextBook, kept)
           : placedPieces(next, nextBook)
       );

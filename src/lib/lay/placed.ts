@@ -1,7 +1,9 @@
+import type { Strip } from '$lib/cloth/strip';
 import { placePrepared, prepare, type PreparedOutline } from '$lib/geometry/prepared';
 import type { Placement } from '$lib/geometry/placement';
 import type { PieceShape } from '$lib/pattern/piece-shape';
 import type { LayDocument, LayPlacement } from './document';
+import { laidShape } from './on-fold';
 import { panelOf, type LayPanel, type PanelBook } from './panel-book';
 
 /*
@@ -24,9 +26,13 @@ export function preparedShape(shape: PieceShape): PreparedOutline {
   return known;
 }
 
-/** The cut outline of a panel where `placement` lays it. */
-export function placedOutline(panel: LayPanel, placement: Placement): PreparedOutline {
-  return placePrepared(preparedShape(panel.shape), placement);
+/** The cut outline of a panel where `placement` lays it; of its half where it lies on the fold. */
+export function placedOutline(
+  panel: LayPanel,
+  placement: Placement,
+  strip: Pick<Strip, 'spread'>
+): PreparedOutline {
+  return placePrepared(preparedShape(laidShape(panel, placement, strip)), placement);
 }
 
 /**
@@ -43,6 +49,6 @@ export function placedPieces(
     const known = kept.get(placement);
     if (known) return [known];
     const panel = panelOf(book, garments.get(placement.garment), placement.panel);
-    return panel ? [{ placement, panel, outline: placedOutline(panel, placement) }] : [];
+    return panel ? [{ placement, panel, outline: placedOutline(panel, placement, document.strip) }] : [];
   });
 }

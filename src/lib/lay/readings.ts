@@ -1,3 +1,4 @@
+import { lengthsSpread, spreadKind } from '$lib/cloth/spread';
 import type { Strip } from '$lib/cloth/strip';
 import { whatToBuy } from '$lib/cloth/what-to-buy';
 import { cosSin } from '$lib/geometry/placement';
@@ -17,8 +18,9 @@ import { layeredWidth, yieldCount } from './yields';
 
 /** Full width counted once a layer: what a length of the lay takes from the roll. */
 function consumedWidth(strip: Strip): Millimetres {
-  const most = Math.max(...strip.spread.map((zone) => zone.layers.length));
-  return layeredWidth(strip) + (strip.fullWidth - strip.usableWidth) * most;
+  // A tube is as wide again below.
+  const sides = spreadKind(strip) === 'tubular' ? 2 : 1;
+  return strip.fullWidth * sides * lengthsSpread(strip);
 }
 
 /** How far along the warp a placed piece reaches: its greatest x. */
@@ -35,6 +37,7 @@ export function clothToBuy(strip: Strip, lengthUsed: Millimetres): Readings['clo
   const { endAllowance, splices, reserve, shrinkage, wholeRepeats, repeat, buyStep } = strip;
   return whatToBuy({
     lengthUsed,
+    lengths: lengthsSpread(strip),
     endAllowance,
     splices,
     reserve,

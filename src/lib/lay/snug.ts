@@ -2,7 +2,7 @@ import { travel } from '$lib/geometry/contact';
 import { snapPlacement } from '$lib/geometry/placement';
 import type { Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
-import { roomTo, sideName, sides, type StripSide } from './borders';
+import { roomTo, sideOn, sides, type StripSide } from './borders';
 import type { Edit } from './edit';
 import type { LayDocument } from './document';
 import type { PanelBook } from './panel-book';
@@ -42,7 +42,7 @@ export function snug(document: LayDocument, book: PanelBook, ids: readonly strin
     far = Math.min(far, travel(outline, fixed, directions[way], document.strip.clearance, far));
   const what = moving.length === 1 ? nameOf(document, book, moving[0]!.placement) : pieces(moving.length);
   if (far === Infinity) return { refused: `Nothing lies that way for ${what} to snug against.` };
-  if (far <= 0) return { refused: `${what} can't move further towards ${sideName[way]}.` };
+  if (far <= 0) return { refused: `${what} can't move further towards ${sideOn(way, document.strip)}.` };
 
   const { x, y } = directions[way];
   return {
@@ -57,6 +57,6 @@ export function snug(document: LayDocument, book: PanelBook, ids: readonly strin
           : placement
       )
     },
-    said: `${what} snugged ${millimetres(far)} towards ${sideName[way]}.`
+    said: `${what} snugged ${millimetres(far)} towards ${sideOn(way, document.strip)}.`
   };
 }

@@ -1,5 +1,6 @@
 import { z } from 'zod';
-import type { Strip } from '$lib/cloth/strip';
+import { choiceOf, spreadOf } from '$lib/cloth/spread';
+import { laidWidth, type Strip } from '$lib/cloth/strip';
 import { LAY_SCHEMA, layDocumentSchema, type Garment, type LayDocument } from './document';
 import { needsOf } from './needs';
 import type { LayPanel, PanelBook } from './panel-book';
@@ -12,7 +13,10 @@ import type { LayPanel, PanelBook } from './panel-book';
 export type Upgrade = (document: Readonly<Record<string, unknown>>) => Record<string, unknown>;
 
 /** `upgrades.get(n)` brings schema n to n + 1. Each gets a test with a literal document before and after. */
-const upgrades: ReadonlyMap<number, Upgrade> = new Map([[1, toSecond]]);
+const upgrades: ReadonlyMap<number, Upgrade> = new Map([
+  [1, toSecond],
+  [2, toThird]
+]);
 
 /** Schema 2 knows the cloth length that a lay is made on, flaws with two measures, shrinking, splices and whole repeats. */
 function toSecond(document: Readonly<Record<string, unknown>>): Record<string, unknown> {
@@ -34,6 +38,20 @@ function toSecond(document: Readonly<Record<string, unknown>>): Record<string, u
       }
     }),
     ...(rules && { rules: { ...rules, mayCoverFlaws: [] } })
+  };
+}
+
+/** Schema 3 knows match groups that are mirrored; those of before were not. */
+function toThird(document: Readonly<Record<string, unknown>>): Record<string, unknown> {
+  const rules = document.rules as Record<string, unknown> | null | undefined;
+  const groups = rules?.matchGroups;
+  if (!rules || !Array.isArray(groups)) return { ...document };
+  return {
+    ...document,
+    rules: {
+      ...rules,
+      matchGroups: groups.map((group: Record<string, unknown>) => ({ ...group, mirrored: false }))
+    }
   };
 }
 
@@ -77,6 +95,9 @@ export function upgraded(
   return document;
 }
 
+/** Stripes that meet within this are seen as one. Common practice, no published source. */
+export const MATCH_TOLERANCE = 2;
+
 const caps = { garments: 500, needs: 5000, placements: 5000 } as const;
 
 /**
@@ -109,21 +130,34 @@ function refuseContradictions({ strip, garments, placements }: LayDocument): voi
       seen.add(id);
     }
   }
+  refuseOddSpread(strip);
+  if (strip.usableWidth > strip.fullWidth)
+    throw new UnreadableDocument(
+      `Expected a usable width of at most the full width of ${strip.fullWidth} mm, got ${strip.usableWidth} mm.`
+    );
+}
+
+/** The zones lie side by side, and are one of the spreads of this cloth: anything else would count its cloth wrongly. */
+function refuseOddSpread(strip: Strip): void {
   let edge = 0;
   for (const zone of strip.spread) {
     if (zone.from !== edge || zone.to <= zone.from)
       throw new UnreadableDocument(
-        `Expected the zones of the spread side by side from 0 to ${strip.usableWidth} mm, got one from ${zone.from} to ${zone.to} mm.`
+        `Expected the zones of the spread side by side from 0 mm, got one from ${zone.from} to ${zone.to} mm.`
       );
     edge = zone.to;
   }
-  if (edge !== strip.usableWidth)
+  if (strip.spread[0]!.layers.length === 0)
+    throw new UnreadableDocument('Expected at least one layer in the first zone of the spread, got none.');
+  let expected: Strip['spread'];
+  try {
+    expected = spreadOf(strip, choiceOf(strip));
+  } catch (fault) {
+    throw new UnreadableDocument(fault instanceof RangeError ? `${fault.message}.` : String(fault));
+  }
+  if (edge !== laidWidth({ spread: expected }))
     throw new UnreadableDocument(
-      `Expected the spread to end at the usable width of ${strip.usableWidth} mm, got ${edge} mm.`
-    );
-  if (strip.usableWidth > strip.fullWidth)
-    throw new UnreadableDocument(
-      `Expected a usable width of at most the full width of ${strip.fullWidth} mm, got ${strip.usableWidth} mm.`
+      `Expected the spread to end at ${laidWidth({ spread: expected })} mm on a usable width of ${strip.usableWidth} mm, got ${edge} mm.`
     );
 }
 
@@ -140,6 +174,6 @@ export function newLay(from: {
     garments: [...from.garments],
     needs: needsOf(from.garments, from.book, from.strip, from.takes),
     placements: [],
-    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
+    rules: { matchGroups: [], matchTolerance: MATCH_TOLERANCE, mayCoverFlaws: [] }
   };
 }

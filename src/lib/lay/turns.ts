@@ -43,11 +43,11 @@ export function runsOneWay(panel: Turned, strip: Strip): boolean {
   return panel.turns === 'oneWay' || strip.nap === 'oneWay';
 }
 
-/** Whether the piece lies against the nap, or against the one way that its panel asks for, on any of the layers. */
+/** Whether the piece lies against the nap of the top layer, or against the one way that its panel asks for. That the layers agree is another finding. */
 export function againstNap(panel: Turned, strip: Strip, turn: Degrees): boolean {
   if (!runsOneWay(panel, strip)) return false;
   const runs = way(panel.turns, turn);
-  return strip.spread.some((zone) => zone.layers.some((layer) => runs === (layer.nap === 'along' ? -1 : 1)));
+  return runs === (strip.spread[0]!.layers[0]!.nap === 'along' ? -1 : 1);
 }
 
 /** The turns that a piece may be laid at on this cloth, in order; null when any turn will do. */

@@ -1,30 +1,29 @@
 import { formatDecimal } from '$lib/units/length';
 import type { Degrees, Millimetres } from '$lib/units/measure';
-import type { LayDocument, LayPlacement, NeedHand } from './document';
+import type { LayDocument, LayPlacement } from './document';
 import { panelOf, type LayPanel, type PanelBook } from './panel-book';
-import { flipIsFree, handAsLaid } from './yields';
+import { laidHand, type LaidHand } from './yields';
 
 /*
  * How a lay speaks of its pieces and measures: plain English, kept apart from the rules.
  */
 
-/** 'Front (left) of Ada bodice 38 · 2'; no hand where it does not matter. */
+/** 'Front (left) of Ada bodice 38 · 2', 'Sleeve (pair) of …'; no hand where it does not matter. */
 export function nameOf(
   document: Pick<LayDocument, 'garments' | 'strip'>,
   book: PanelBook,
-  placement: Pick<LayPlacement, 'garment' | 'panel' | 'flip'>
+  placement: LayPlacement
 ): string {
   const garment = document.garments.find(({ id }) => id === placement.garment);
   const panel = panelOf(book, garment, placement.panel);
-  const hand =
-    panel && !flipIsFree(panel, document.strip) ? handAsLaid(placement, panel, document.strip) : 'either';
+  const hand = panel ? laidHand(placement, panel, document.strip) : 'either';
   return pieceName(panel, hand, garment?.label);
 }
 
 /** The same for a piece that hangs on the Rail. */
 export function pieceName(
   panel: LayPanel | undefined,
-  hand: NeedHand,
+  hand: LaidHand,
   garmentLabel: string | undefined
 ): string {
   const name = panel?.shape.name ?? 'A piece';

@@ -2,6 +2,7 @@ import type { LayDocument } from '$lib/lay/document';
 import type { PanelBook } from '$lib/lay/panel-book';
 import { openLayDocument } from '$lib/lay/stored-lay';
 import { problemFaults } from '$lib/settle/faults';
+import { beyondSettle } from '$lib/settle/from-lay';
 import {
   laidBy,
   problemOfRun,
@@ -104,6 +105,8 @@ function oneAtATime(running: { job: string; lay: string; name: string }, layId: 
 
 /** Refuses what no search could lay, before anything runs. */
 function refuseHopeless(document: LayDocument, panels: PanelBook, choice: SettleChoice): void {
+  const beyond = beyondSettle(document);
+  if (beyond !== null) throw new Problem(400, 'cannot-settle', 'This cloth can’t be settled on', beyond);
   const { problem } = problemOfRun(document, panels, choice, null).settle;
   if (problem.pieces.length === 0)
     throw new Problem(

@@ -1,3 +1,4 @@
+import { spreadKind, spreadWords } from '$lib/cloth/spread';
 import type { Flaw, Strip } from '$lib/cloth/strip';
 import { placeOutline, snapPlacement } from '$lib/geometry/placement';
 import type { Outline } from '$lib/geometry/point';
@@ -30,6 +31,14 @@ export interface LaySettle {
 
 /** A panel that may be turned at will is tried at so many turns. */
 const FREE_TURNS = Array.from({ length: 12 }, (_, i) => i * 30);
+
+/** What of this lay's cloth the search can't do yet, in words for a person; null when it can. */
+export function beyondSettle({ strip }: Pick<LayDocument, 'strip'>): string | null {
+  const kind = spreadKind(strip);
+  return kind === 'open'
+    ? null
+    : `Settle lays pieces on open, single cloth only; this cloth lies otherwise (${spreadWords(strip)}). Place the pieces by hand, or open the cloth.`;
+}
 
 /** The lay as a problem for the solver, by the rules that the check keeps. */
 export function fromLay(

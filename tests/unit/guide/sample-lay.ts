@@ -171,7 +171,7 @@ const where: [string, string, number, number, number, boolean][] = [
 export function sampleDocument(garments = 1, pitch = 1720): LayDocument {
   const ids = Array.from({ length: garments }, (_, i) => `g${i + 1}`);
   return layDocumentSchema.parse({
-    schema: 2,
+    schema: 3,
     strip: {
       spread: openSpread(1480),
       usableWidth: 1480,
@@ -253,6 +253,7 @@ export function sampleInput(document = sampleDocument(), more: Partial<GuideInpu
         lengthUsed,
         start: 20,
         end: 20,
+        furtherPlies: 0,
         splices: 0,
         reserve: 0,
         shrinkage: 0,

@@ -203,7 +203,7 @@ describe('a lay of the first schema', () => {
     };
     expect(openLayDocument(first)).toEqual({
       ...first,
-      schema: 2,
+      schema: 3,
       strip: {
         ...first.strip,
         flaws: [{ id: 'f', x: 10, y: 20, along: 0, across: 0, radius: 5, note: 'slub' }],
@@ -213,6 +213,32 @@ describe('a lay of the first schema', () => {
         wholeRepeats: false
       },
       rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
+    });
+  });
+
+  it('takes match groups of schema 2 as ones whose pieces show the repeat alike', () => {
+    const second = {
+      schema: 2,
+      strip: JSON.parse(JSON.stringify(strip())) as object,
+      garments: [],
+      needs: [],
+      placements: [],
+      rules: {
+        matchGroups: [{ id: 'side', points: [{ garment: 'ada', panel: 'front', point: 'p' }] }],
+        matchTolerance: 1,
+        mayCoverFlaws: []
+      }
+    };
+    expect(openLayDocument(second)).toEqual({
+      ...second,
+      schema: 3,
+      rules: {
+        matchGroups: [
+          { id: 'side', mirrored: false, points: [{ garment: 'ada', panel: 'front', point: 'p' }] }
+        ],
+        matchTolerance: 1,
+        mayCoverFlaws: []
+      }
     });
   });
 });

@@ -25,8 +25,8 @@ describe('the door of lay documents', () => {
     ['no object', 7, /Expected a lay document, got number/],
     ['a list', [], /got a list/],
     ['null', null, /got null/],
-    ['no schema', json({ schema: undefined }), /Expected a schema number of 1 to 2, got undefined/],
-    ['a newer schema', json({ schema: 3 }), /Expected schema 2 or older, got 3/],
+    ['no schema', json({ schema: undefined }), /Expected a schema number of 1 to 3, got undefined/],
+    ['a newer schema', json({ schema: 4 }), /Expected schema 3 or older, got 4/],
     ['a schema that is no number', json({ schema: '1' }), /got "1"/],
     ['too many placements', json({ placements: Array(5001).fill(1) }), /at most 5000 placements, got 5001/],
     ['a placement that does not fit', json({ placements: [{ id: 'a' }] }), /placements\[0\]/],
@@ -39,7 +39,7 @@ describe('the door of lay documents', () => {
     [
       'a spread that leaves cloth uncovered',
       json({ strip: { ...strip(), usableWidth: 900 } }),
-      /spread to end at the usable width of 900 mm, got 1000 mm/
+      /spread to end at 900 mm on a usable width of 900 mm, got 1000 mm/
     ],
     [
       'a usable width beyond the full one',

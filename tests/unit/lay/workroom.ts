@@ -105,12 +105,12 @@ export function lay(
   garments: readonly Garment[] = [garment()]
 ): LayDocument {
   return {
-    schema: 2,
+    schema: 3,
     strip: cloth,
     garments: [...garments],
     needs: needsOf(garments, book, cloth),
     placements: [...placements],
-    rules: { matchGroups: [], matchTolerance: 1, mayCoverFlaws: [] }
+    rules: { matchGroups: [], matchTolerance: 2, mayCoverFlaws: [] }
   };
 }
 
