@@ -1,6 +1,6 @@
 import type { Draft } from './draft';
 import { bands } from './drafts/bands';
-import { bustier } from './drafts/bustier';
+import { bustier } from './bustier/bustier';
 import { circleSkirt } from './drafts/circle-skirt';
 import { gatheredSkirt } from './drafts/gathered-skirt';
 import { skirtBlock } from './drafts/skirt-block';
