@@ -6,6 +6,7 @@ import { area, boundingBox } from '$lib/geometry/polygon';
 import { placeOutline } from '$lib/geometry/placement';
 import { check } from '$lib/lay/check';
 import { enlargedPanel } from '$lib/lay/enlarged';
+import { toggleCover } from '$lib/lay/flaw-cover';
 import { openLayDocument } from '$lib/lay/stored-lay';
 import { runs } from '../../runs';
 import { bookOf, ell, lay, panel, placement, rectangle, strip } from './workroom';
@@ -109,6 +110,15 @@ describe('a flaw with two measures', () => {
 
   it('is found when it is larger than the whole piece', () => {
     expect(with_(flaw({ x: 200, y: 200, along: 900, across: 900 }))).toHaveLength(1);
+  });
+
+  it('may be covered once that is said for the panel, and not once it is taken back', () => {
+    const document = lay(book, [placement('a', 'back')], strip({ flaws: [flaw({ x: 200, y: 200 })] }));
+    const once = toggleCover(document, document.placements[0]!, 'Back');
+    expect(once.said).toBe('Back may lie over flaws of the cloth.');
+    expect(kinds(once.document!, book)).toEqual([]);
+    const back = toggleCover(once.document!, document.placements[0]!, 'Back');
+    expect(kinds(back.document!, book)).toEqual(['flaw']);
   });
 
   it('may be covered by a panel that was allowed to', () => {

@@ -1,5 +1,5 @@
 import { redirect } from '@sveltejs/kit';
-import { formatDecimal } from '$lib/units/length';
+import { formatDecimal, MM_PER } from '$lib/units/length';
 import { moneyDigits } from '$lib/units/money';
 import { clothForm } from '$lib/server/cloth-form';
 import * as clothLengths from '$lib/server/cloth-lengths';
@@ -32,7 +32,10 @@ export const load: PageServerLoad = async (event) => {
       treatment: cloth.shrinkage.treatment,
       shrinkWarp: formatDecimal(cloth.shrinkage.warp * 100, 2),
       shrinkWeft: formatDecimal(cloth.shrinkage.weft * 100, 2),
-      buyStep: `${formatDecimal(cloth.buyStep, 3)} mm`,
+      buyStep:
+        lengthUnit === 'cm'
+          ? `${formatDecimal(cloth.buyStep / 10, 3)} cm`
+          : `${formatDecimal(cloth.buyStep / MM_PER.in, 3)} in`,
       ...(cloth.price
         ? { price: moneyDigits(cloth.price.minor, currency), priceUnit: cloth.price.unit }
         : {}),
