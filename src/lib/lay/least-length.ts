@@ -202,7 +202,8 @@ function sideBySide(
   places: number
 ): { length: Millimetres; panels: readonly string[] } {
   const [zone] = strip.spread;
-  if (!zone || strip.spread.length > 1) return { length: 0, panels: [] };
+  // A piece on a fold takes half of its width there.
+  if (!zone || strip.spread.length > 1 || zone.fold !== 'none') return { length: 0, panels: [] };
   const clearance = surely(strip.clearance);
   const whole = zone.to - zone.from + clearance;
   const parts = Array.from({ length: places }, (_, j) => ((j + 1) * whole) / (places + 1) - clearance);

@@ -20,6 +20,7 @@ describe('what to buy', () => {
       lengthUsed: 1900,
       start: 20,
       end: 40,
+      furtherPlies: 0,
       splices: 60,
       reserve: 15,
       shrinkage: 0,
@@ -27,6 +28,10 @@ describe('what to buy', () => {
       roundedUpTo: 100,
       total: 2100
     });
+  });
+
+  it('buys every ply with its ends', () => {
+    expect(whatToBuy({ ...question, lengths: 3 })).toMatchObject({ furtherPlies: 2 * 1960, total: 6000 });
   });
 
   it('buys more only of cloth that is shrunk in the workroom', () => {
