@@ -70,21 +70,27 @@ export interface SeamFinding {
   readonly message: string;
 }
 
-/** The sew line of one side from the start of the seam to its end. @throws RangeError for an edge that is not there. */
-export function sidePath(panels: readonly Panel[], side: SeamSide): Path {
-  const paths = side.edges.map(({ edge, reversed: against }) => {
+/**
+ * The sew lines of one side in order, from the start of the seam to its end; between them lie darts, closed when it is sewn.
+ * @throws RangeError for an edge that is not there.
+ */
+export function sidePaths(panels: readonly Panel[], side: SeamSide): Path[] {
+  if (side.edges.length === 0) throw new RangeError(`A seam of ${side.panel} has no edges`);
+  return side.edges.map(({ edge, reversed: against }) => {
     const path = edgePath(edgeOf(panelOf(panels, side.panel), edge), (p) => p);
     return against ? reversed(path) : path;
   });
-  const [first] = paths;
-  if (!first) throw new RangeError(`A seam of ${side.panel} has no edges`);
-  return { from: first.from, segments: paths.flatMap(({ segments }) => segments) };
+}
+
+/** How long one side of a seam is. */
+export function sideLength(panels: readonly Panel[], side: SeamSide): Millimetres {
+  return sidePaths(panels, side).reduce((sum, path) => sum + pathLength(path), 0);
 }
 
 /** Walks one seam of `panels`. */
 export function walkSeam(panels: readonly Panel[], seam: Seam): SeamWalk {
-  const lengthA = pathLength(sidePath(panels, seam.a));
-  const lengthB = pathLength(sidePath(panels, seam.b));
+  const lengthA = sideLength(panels, seam.a);
+  const lengthB = sideLength(panels, seam.b);
   const difference = lengthB - lengthA - seam.ease;
   const onA = notchesOf(panels, seam.a);
   const onB = notchesOf(panels, seam.b);
