@@ -474,6 +474,24 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     access: 'styles: change',
     call: (own) => params({ id: own.style }, { form: {} })
   },
+  '/api/styles/[id]/desk GET': { access: 'styles: change', call: (own) => params({ id: own.style }) },
+  '/api/styles/[id]/desk PUT': {
+    access: 'styles: change',
+    answers: [400],
+    call: (own) =>
+      params({ id: own.style }, { method: 'PUT', json: { version: 0, saveId: newId(), document: {} } })
+  },
+  '/api/styles/[id]/desk DELETE': {
+    access: 'styles: change',
+    // There is no working copy: 409 says so.
+    answers: [409],
+    call: (own) => params({ id: own.style }, { method: 'DELETE', json: { version: 1 } })
+  },
+  '/api/styles/[id]/desk/version POST': {
+    access: 'styles: change',
+    answers: [409],
+    call: (own) => params({ id: own.style }, { method: 'POST', json: { version: 1, note: '' } })
+  },
   '/styles/imports/[id] load': { access: 'styles: change', call: (own) => params({ id: own.upload }) },
   '/styles/imports/[id] ?/save': {
     access: 'styles: change',
