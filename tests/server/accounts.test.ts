@@ -1,12 +1,16 @@
 import fc from 'fast-check';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
+import { clothCost } from '$lib/cloth/cost';
+import { readingsOf } from '$lib/lay/readings';
 import { newId } from '$lib/server/ids';
 import * as lays from '$lib/server/lays';
+import { moneyDefaults } from '$lib/server/money-defaults';
 import * as payments from '$lib/server/payments';
 import { emptySheet } from '$lib/server/price-sheet';
 import * as prices from '$lib/server/prices';
 import * as quotes from '$lib/server/quotes';
-import { makeCast, type Cast } from './cast';
+import { actions } from '../../src/routes/(app)/settings/prices/+page.server';
+import { ending, eventFor, makeCast, type Cast } from './cast';
 import { good, makeOrder } from './lay-orders';
 import { agreeTo, makeQuoted, words } from './money';
 
@@ -64,6 +68,57 @@ describe('the price of an order', () => {
       [false, 800],
       [true, null]
     ]);
+  });
+
+  it('bears its part of a joint lay, and the parts add up to the whole', async () => {
+    const one = await makeOrder(scope(), { number: 7 });
+    const two = await makeOrder(scope(), { number: 8, quantity: 2 });
+    await cast.db('order_item_cloths').where({ cloth_id: two.main }).update({ cloth_id: one.main });
+    const { id } = await lays.create(scope(), {
+      orderId: one.order,
+      clothId: one.main,
+      with: [two.order]
+    });
+    await lays.save(scope(), id, {
+      version: 1,
+      saveId: newId(),
+      document: good((await lays.read(scope(), id)).document)
+    });
+    await lays.choose(scope(), id);
+    const parts = await Promise.all(
+      [one, two].map(async ({ order }) => (await prices.read(scope(), order)).build.cloths[0]!.computed!)
+    );
+    const lay = await lays.read(scope(), id);
+    const whole = clothCost(readingsOf(lay.document, lay.panels).clothToBuy.total, 1234, 'metre');
+    expect(parts[0]! + parts[1]!).toBe(whole);
+    expect(parts[1]! / parts[0]!).toBeCloseTo(2, 1);
+  });
+
+  it('begins with what the studio has set, and an order sets otherwise; kept quotes stay', async () => {
+    const { order } = await makeQuoted(scope());
+    const post = (form: Record<string, string>) =>
+      ending(() => actions.default!(eventFor<never>({ locals: cast.here.owner.locals, form })));
+    const form = {
+      ...{ hourly: '42,50', overhead: '15', margin: '12.5 %', taxMode: 'included', taxRate: '20' },
+      ...{ depositShare: '30', roundTo: '5', validDays: '21', fittings: '3', letterhead: 'Row 3' }
+    };
+    expect(await post({ ...form, margin: 'much', roundTo: '0' })).toMatchObject({
+      value: { status: 400, data: { errors: { margin: expect.any(String), roundTo: expect.any(String) } } }
+    });
+    expect((await moneyDefaults(scope())).hourly).toBe(0);
+    expect(await post(form)).toMatchObject({ status: 303 });
+    expect(await moneyDefaults(scope())).toMatchObject({ hourly: 4250, roundTo: 500, fittings: 3 });
+    expect(await moneyDefaults(cast.elsewhere.owner.scope)).toMatchObject({ hourly: 0, depositShare: 5000 });
+
+    await prices.save(scope(), order, 1, { ...emptySheet, minutes: 60, priceByHand: null, marginShare: 0 });
+    const { build, terms } = await prices.read(scope(), order);
+    // 42.50 + 15 % = 48.875 → 48.88, in steps of 5.00: 50.00, of which 20 % tax 8.33; a deposit of 30 %.
+    expect(build).toMatchObject({ overhead: { amount: 638 }, total: 5000, tax: 833, deposit: 1500 });
+    expect(terms.margin).toBe(0);
+    expect((await quotes.read(scope(), order, 1)).document).toMatchObject({
+      total: 100_000,
+      studio: { letterhead: '' }
+    });
   });
 
   it('is saved by version: who is late is told, and nothing is overwritten', async () => {

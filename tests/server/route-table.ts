@@ -59,6 +59,7 @@ const onOrder = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.order }, form ? { form } : {});
 const onQuote = (own: Props, form?: Record<string, string>): Call =>
   params({ id: own.order, number: '1' }, form ? { form } : {});
+const shares = { overhead: '10', margin: '10', taxRate: '0', depositShare: '50' };
 const byHand = (): Record<string, string> => ({
   id: newId(),
   kind: 'balance',
@@ -212,6 +213,13 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/settings ?/default': {
     access: 'studio: manage',
     call: () => ({ form: { name: 'Row', currency: 'EUR', lengthUnit: 'cm', timeZone: 'UTC' } })
+  },
+  '/settings/prices load': { access: 'studio: manage' },
+  '/settings/prices ?/default': {
+    access: 'studio: manage',
+    call: () => ({
+      form: { ...shares, taxMode: 'none', hourly: '40', roundTo: '1', validDays: '14', fittings: '2' }
+    })
   },
 
   // Cloths.

@@ -1,9 +1,10 @@
 import { clothCost, type PriceUnit } from '$lib/cloth/cost';
 import { readingsOf } from '$lib/lay/readings';
-import type { Millimetres, Minor } from '$lib/units/measure';
+import type { Millimetres, Minor, Share } from '$lib/units/measure';
 import { buildPrice, type PriceBuild } from '$lib/units/price';
 import type { BasisPoints, TaxMode } from '$lib/units/share';
 import { database } from './database';
+import * as jointLays from './joint-lays';
 import * as lays from './lays';
 import { moneyDefaults, type MoneyDefaults } from './money-defaults';
 import * as orders from './orders';
@@ -22,8 +23,16 @@ export interface PricedCloth {
   readonly name: string;
   readonly usableWidth: Millimetres;
   /** The chosen lays of this cloth; empty while none is chosen. */
-  readonly lays: readonly { readonly id: string; readonly name: string; readonly loose: number }[];
-  /** Length to buy for them; null while there is none. */
+  readonly lays: readonly {
+    readonly id: string;
+    readonly name: string;
+    readonly loose: number;
+    /** The order's part of it; null in a lay of its own. */
+    readonly joint: { readonly share: Share; readonly cost: Minor | null } | null;
+    /** To buy for this order. */
+    readonly length: Millimetres;
+  }[];
+  /** Length to buy for them, of a joint lay the order's share; null while there is none. */
   readonly length: Millimetres | null;
   readonly price: { readonly minor: Minor; readonly unit: PriceUnit } | null;
   /** Whether the client brings it. */
@@ -93,9 +102,12 @@ export async function read(scope: Scope, orderId: string): Promise<OrderPrice> {
   return { order, currency, defaults, version: stored?.version ?? 0, sheet, cloths, terms, build };
 }
 
-function costOf({ own, length, price }: PricedCloth): Minor | null {
+function costOf({ own, lays, price }: PricedCloth): Minor | null {
   if (own) return 0;
-  return length === null || price === null ? null : clothCost(length, price.minor, price.unit);
+  if (price === null || lays.length === 0) return null;
+  const alone = lays.filter(({ joint }) => joint === null).reduce((sum, { length }) => sum + length, 0);
+  // The parts of a joint lay add up to its cost over all its orders.
+  return lays.reduce((sum, { joint }) => sum + (joint?.cost ?? 0), clothCost(alone, price.minor, price.unit));
 }
 
 async function clothsOf(scope: Scope, order: orders.Order, sheet: PriceSheet): Promise<PricedCloth[]> {
@@ -107,13 +119,21 @@ async function clothsOf(scope: Scope, order: orders.Order, sheet: PriceSheet): P
     )
     .select<{ id: string; price: number | null; price_unit: PriceUnit }[]>('id', 'price', 'price_unit');
   const chosen = await database()('lays')
-    .where({ studio_id: scope.studio, order_id: order.id, chosen: 1 })
+    .where({ studio_id: scope.studio, chosen: 1 })
+    .where((either) =>
+      either
+        .where({ order_id: order.id })
+        .orWhereIn(
+          'id',
+          database()('lay_orders').where({ studio_id: scope.studio, order_id: order.id }).select('lay_id')
+        )
+    )
     .orderBy('created_at')
     .select<{ id: string; cloth_id: string }[]>('id', 'cloth_id');
   const found: PricedCloth[] = [];
   for (const cloth of order.cloths) {
     const needs = await Promise.all(
-      chosen.filter(({ cloth_id }) => cloth_id === cloth.id).map(({ id }) => needOf(scope, id))
+      chosen.filter(({ cloth_id }) => cloth_id === cloth.id).map(({ id }) => needOf(scope, id, order.id))
     );
     const price = prices.find(({ id }) => id === cloth.id);
     found.push({
@@ -129,18 +149,23 @@ async function clothsOf(scope: Scope, order: orders.Order, sheet: PriceSheet): P
   return found;
 }
 
-/** What a lay takes of its cloth: as the server last found it, computed anew if the lay changed since. */
-async function needOf(scope: Scope, layId: string) {
+/** What a lay takes of its cloth for an order: as the server last found it, computed anew if the lay changed since. */
+async function needOf(scope: Scope, layId: string, orderId: string): Promise<PricedCloth['lays'][number]> {
   const lay = await lays.read(scope, layId);
   const readings =
     lay.verdict && lay.verdictVersion === lay.version
       ? lay.verdict.readings
       : readingsOf(lay.document, lay.panels);
+  const part =
+    lay.orders.length > 1
+      ? (await jointLays.sharesOf(scope, lay)).find(({ order }) => order.id === orderId)
+      : undefined;
   return {
     id: lay.id,
     name: lay.name,
     loose: readings.pieces.loose,
-    length: readings.clothToBuy.total
+    joint: part ? { share: part.share, cost: part.cost ?? null } : null,
+    length: part?.length ?? readings.clothToBuy.total
   };
 }
 
