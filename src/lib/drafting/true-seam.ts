@@ -5,7 +5,7 @@ import { accepted, refused, type Edited } from '$lib/pattern/edited';
 import type { Edge, Panel } from '$lib/pattern/panel';
 import type { Millimetres } from '$lib/units/measure';
 import { solve } from './curves';
-import { sidePath, walkSeam, type Seam, type SeamSide, type SeamWalk } from './seam-walk';
+import { sideLength, walkSeam, type Seam, type SeamSide, type SeamWalk } from './seam-walk';
 
 /*
  * Truing a seam: one edge or both are changed until they agree, ease included.
@@ -60,7 +60,7 @@ export function toLength(
 ): Edited {
   const panel = panels.find(({ id }) => id === side.panel);
   if (!panel) return refused('There is no such panel.');
-  const whole = pathLength(sidePath(panels, side));
+  const whole = sideLength(panels, side);
   if (Math.abs(whole - length) < 1e-4) return { made: panel };
   const named = side.edges[end === 'start' ? 0 : side.edges.length - 1]!;
   const index = panel.edges.findIndex(({ id }) => id === named.edge);
