@@ -388,6 +388,13 @@ describe('the bustier by hand: common practice, no published source', () => {
     expect(drawn.warnings).toEqual([]);
   });
 
+  it('brings the top edge to the high bust where that is chosen', () => {
+    const body = { ...example, highBust: 34.5 * INCH };
+    const off = (result: DraftResult) => totalOff(result.totals.find(({ level }) => level === 'topEdge')!)!;
+    expect(off(draw(body))).toBeCloseTo(1.5 * INCH, 2);
+    expect(off(draw(body, { gape: 'highBust' }))).toBeCloseTo(0, 2);
+  });
+
   it('names what is more than 1 cm off, and an under-bust that would hold nothing up', () => {
     const slim = { ...example, underBust: 27 * INCH, waist: 30 * INCH, highBust: 31 * INCH };
     const plain = draw(slim, { sides: 'plain' });

@@ -1,3 +1,4 @@
+import { formatDecimal, formatLength, type LengthUnit } from '$lib/units/length';
 import type { Millimetres } from '$lib/units/measure';
 
 /*
@@ -102,6 +103,20 @@ export const yesNo = (id: string, label: string, says: string, standard: boolean
 /** The choices as they stand without anybody's deciding. */
 export function defaultsOf(choices: readonly Choice[]): ChoiceValues {
   return Object.fromEntries(choices.map((choice) => [choice.id, choice.default]));
+}
+
+/** A value as it is read: a length in `unit`, a number with what stands behind it, the word of an option, yes or no. */
+export function valueWords(choice: Choice, value: number | string | boolean, unit: LengthUnit): string {
+  switch (choice.kind) {
+    case 'length':
+      return formatLength(Number(value), unit);
+    case 'number':
+      return `${formatDecimal(Number(value), 2)} ${choice.unit}`.trim();
+    case 'oneOf':
+      return choice.options.find((option) => option.value === value)?.word ?? String(value);
+    case 'yesNo':
+      return value === true ? 'yes' : 'no';
+  }
 }
 
 /**

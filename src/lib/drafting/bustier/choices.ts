@@ -20,6 +20,15 @@ export const bustierChoices: readonly Choice[] = [
     min: INCH / 2,
     max: INCH
   }),
+  oneOf(
+    'gape',
+    'Taken in against gaping',
+    'A quarter inch on each side of the seam at the top, or as much as brings the top edge to the measured high bust.',
+    [
+      ['quarter', 'A quarter inch each side'],
+      ['highBust', 'To the high bust']
+    ]
+  ),
   length('bridge', 'Bridge between the cups', 'How far the cups stand apart at the centre front.', {
     default: INCH,
     min: INCH / 2,

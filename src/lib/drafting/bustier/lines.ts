@@ -148,7 +148,8 @@ export function bustierLines(body: Body, chosen: Chosen, sheet: Construction): B
     K,
     intake,
     y,
-    topAbove: chosen.number('topAbove')
+    topAbove: chosen.number('topAbove'),
+    gape: gapeOf(body, chosen, sheet)
   });
   const side = sideLine(sheet, chosen, y, { B, U, W, H: hemGirth }, intake);
   return {
@@ -240,6 +241,21 @@ function intakeOf(body: Body, y: Levels, sheet: Construction): { intake: Millime
   return { intake, half };
 }
 
+/** More than this on one side of the seam can't be a mere gape: the top would point. */
+const MOST_GAPE = 0.9 * INCH;
+
+/** Taken in on each side of the seam at the top, against gaping. */
+function gapeOf(body: Body, chosen: Chosen, sheet: Construction): Millimetres {
+  const high = body.highBust;
+  if (chosen.word('gape') === 'quarter' || high === undefined)
+    return sheet.length('Against gaping, g', INCH / 4, '¼ in on each side of the seam at the top');
+  const wanted = (body.bust! - high + INCH) / 4;
+  return sheet.length('Against gaping, g', Math.max(0, Math.min(MOST_GAPE, wanted)), {
+    formula: '(B − high bust + 1 in)/4 on each side of the seam, from 0 to 0.9 in',
+    ourReading: true
+  });
+}
+
 interface CupPlan {
   readonly M: Point;
   readonly bustPoint: Point;
@@ -250,6 +266,7 @@ interface CupPlan {
   readonly intake: Millimetres;
   readonly y: Levels;
   readonly topAbove: Millimetres;
+  readonly gape: Millimetres;
 }
 interface CupSeams {
   readonly innerSeam: Path;
@@ -259,7 +276,7 @@ interface CupSeams {
 }
 
 function cupSeams(sheet: Construction, plan: CupPlan): CupSeams {
-  const { M, bustPoint, dart, inner, outer, K, intake, y, topAbove } = plan;
+  const { M, bustPoint, dart, inner, outer, K, intake, y, topAbove, gape } = plan;
   const at = y.chest - topAbove;
   const X = sheet.point(
     'X',
@@ -268,10 +285,10 @@ function cupSeams(sheet: Construction, plan: CupPlan): CupSeams {
   );
   const T1 = sheet.point(
     'T1',
-    add(X, { x: -intake / 3 - INCH / 4, y: 0 }),
-    'X − I/3 − ¼ in: the smaller third towards the centre, ¼ in against gaping'
+    add(X, { x: -intake / 3 - gape, y: 0 }),
+    'X − I/3 − g: the intake given back, its smaller third towards the centre, then g more against gaping'
   );
-  const T2 = sheet.point('T2', add(X, { x: (2 * intake) / 3 + INCH / 4, y: 0 }), 'X + 2I/3 + ¼ in');
+  const T2 = sheet.point('T2', add(X, { x: (2 * intake) / 3 + gape, y: 0 }), 'X + 2I/3 + g');
   need(
     T1.x - K.x >= 20,
     'bustSpan',
