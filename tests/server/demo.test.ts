@@ -11,7 +11,8 @@ import * as layList from '$lib/server/lay-list';
 import * as lays from '$lib/server/lays';
 import { readListing } from '$lib/server/listing';
 import * as orders from '$lib/server/orders';
-import type { Scope } from '$lib/server/scope';
+import * as payments from '$lib/server/payments';
+import { studioScope, type Scope } from '$lib/server/scope';
 import * as studios from '$lib/server/studios';
 import { load } from '../../src/routes/+page.server';
 import { ending, eventFor, makeCast, type Cast } from './cast';
@@ -148,6 +149,13 @@ test('the demo installation has three people who can sign in, and seeding twice 
   const once = await counts();
   expect(await demo.seed()).toMatchObject({ studio });
   expect(await counts()).toEqual(once);
+  // One quote waits for its answer, one is agreed with its deposit paid; nothing is mailed twice.
+  const states = await cast.db('quotes').orderBy('state').pluck('state');
+  expect(states).toEqual(['agreed', 'sent']);
+  const [account] = await payments.totals(studioScope(studio));
+  expect(account!.received).toBeGreaterThan(0);
+  expect(account!.agreed - account!.received).toBe(account!.owed);
+  expect(await cast.db('messages').where({ template: 'quote' })).toHaveLength(2);
   expect(signIns.map((one) => one.role)).toEqual(['owner', 'patternMaker', 'cutter']);
   for (const { email, password } of signIns) {
     expect(password.length).toBeGreaterThanOrEqual(12);

@@ -7,16 +7,24 @@ import * as accounts from './accounts';
 import * as audit from './audit';
 import * as clothLengths from './cloth-lengths';
 import * as clothWidths from './cloth-widths';
+import * as clientLinks from './client-links';
 import * as cloths from './cloths';
 import { database } from './database';
 import * as shelf from './demo/cloth-shelf';
 import * as content from './demo/content';
+import * as money from './demo/money';
 import { placeAll } from './demo/first-fit';
 import { spoil } from './demo/spoil';
 import * as layRelease from './lay-release';
 import * as lays from './lays';
+import { moneyDefaults, saveMoneyDefaults } from './money-defaults';
+import * as orderQuestions from './order-questions';
 import * as orders from './orders';
 import { hashPassword } from './passwords';
+import * as payments from './payments';
+import { emptySheet } from './price-sheet';
+import * as prices from './prices';
+import * as quotes from './quotes';
 import { studioScope, type Scope } from './scope';
 import * as studios from './studios';
 
@@ -252,5 +260,54 @@ export async function seed(
   }
   // The application lays, not the owner: the owner's first sign-in still begins at the demo order.
   await fill(studioScope(studio), now);
+  await seedMoney(studioScope(studio), now);
   return { studio, signIns: content.people };
+}
+
+/**
+ * Prices and quotes of the demo installation. They are mailed like real ones, so `fill` leaves them out: it may be called in the
+ * studio of somebody whose mail server would send them.
+ */
+async function seedMoney(scope: Scope, now: number): Promise<void> {
+  if (await database()('quotes').where({ studio_id: scope.studio }).first('id')) return;
+  const before = await moneyDefaults(scope);
+  if (before.hourly === 0) await saveMoneyDefaults(scope, { ...before, ...money.defaults });
+  const { validDays, fittings, alterations, exclusions, terms } = await moneyDefaults(scope);
+  const { timeZone } = await studios.read(scope);
+  const day = dayAt(now, timeZone);
+  const validUntil = dayAt(Date.parse(`${day}T12:00:00Z`) + validDays * 86_400_000, 'UTC');
+  for (const quote of money.quotes) {
+    const order = demoId(scope.studio, `order ${quote.order}`);
+    if (!(await has('orders', scope, order))) continue;
+    const cloths = Object.entries(quote.byHand).map(([key, byHand]) => [
+      demoId(scope.studio, `cloth ${key}`),
+      { byHand, own: false }
+    ]);
+    await prices.save(
+      scope,
+      order,
+      0,
+      { ...emptySheet, ...quote.sheet, cloths: Object.fromEntries(cloths) },
+      now
+    );
+    const words = { validUntil, fittings, dates: '', alterations, exclusions, terms };
+    const number = await quotes.create(scope, order, words, now);
+    await quotes.send(scope, order, number, quote.address, now);
+    const { hash, document, deposit } = await quotes.read(scope, order, number, now);
+    if (quote.agreed) {
+      const answer = { number, hash, name: document.client, place: '192.0.2.7' };
+      await quotes.agree(scope, order, answer, quote.address, now);
+      const paid = { kind: 'deposit', method: 'transfer', amount: deposit, day, note: '' } as const;
+      const id = demoId(scope.studio, `payment ${quote.order}`);
+      await payments.recordByHand(scope, order, { ...paid, id, receiptTo: quote.address }, now);
+    }
+    const [link] = await clientLinks.list(scope, order);
+    if (quote.question)
+      await orderQuestions.ask(
+        { id: link!.id, studio: scope.studio, order, sentTo: quote.address },
+        demoId(scope.studio, `question ${quote.order}`),
+        quote.question,
+        now
+      );
+  }
 }
