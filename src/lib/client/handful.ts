@@ -1,4 +1,5 @@
 import type { Point } from '$lib/geometry/point';
+import type { LayDocument } from '$lib/lay/document';
 import type { Live, LiveReport } from '$lib/lay/live';
 import type { LoosePiece } from '$lib/lay/needs';
 import { stepped, type TablePiece } from './table-pieces';
@@ -24,6 +25,8 @@ const REST_MS = 70;
 
 export class Handful {
   readonly ids: readonly string[];
+  /** The same, to be asked. */
+  readonly moving: ReadonlySet<string>;
   #step: Point | null = null;
   #report: LiveReport | null = null;
   #restUntil = 0;
@@ -33,9 +36,12 @@ export class Handful {
     readonly pieces: readonly TablePiece[],
     /** The hanger that the piece came from; null when the pieces came off the cloth. */
     readonly fromRail: LoosePiece | null,
-    private readonly live: Live
+    private readonly live: Live,
+    /** The lay that the pieces are moved in. */
+    readonly document: LayDocument
   ) {
     this.ids = pieces.map(({ id }) => id);
+    this.moving = new Set(this.ids);
   }
 
   /** Whether the last report is of another step: ask again after a moment. */

@@ -1,7 +1,7 @@
 import type { Point } from '$lib/geometry/point';
 import { snap } from '$lib/geometry/point';
 import * as commands from '$lib/lay/commands';
-import type { Edit } from '$lib/lay/edit';
+import { boxOf, middleOf, type Edit } from '$lib/lay/edit';
 import { exactOf } from '$lib/lay/exact';
 import type { LayDocument } from '$lib/lay/document';
 import {
@@ -14,6 +14,7 @@ import {
   undo,
   type History
 } from '$lib/lay/history';
+import { landing } from '$lib/lay/landing';
 import { createLive, type Live } from '$lib/lay/live';
 import { loose, type LoosePiece } from '$lib/lay/needs';
 import { panelOf, type PanelBook } from '$lib/lay/panel-book';
@@ -28,7 +29,7 @@ import { Handful } from './handful';
 import { LayChecking } from './lay-checking.svelte';
 import { LaySaving } from './lay-saving.svelte';
 import { LayServer, Refusal, type KeptRevision, type LayOnServer } from './lay-server';
-import { tablePieces, type TablePiece } from './table-pieces';
+import { stepped, tablePieces, type TablePiece } from './table-pieces';
 import { browserMoves, movesKey, type MovesStore } from './unsaved-moves';
 
 /*
@@ -235,7 +236,7 @@ export class OpenLay {
     const pieces = this.pickedPieces.filter(({ placement }) => !placement.locked);
     if (pieces.length === 0) return false;
     this.carried = { x: 0, y: 0 };
-    this.inHand = new Handful(pieces, null, this.#liveOf(this.document));
+    this.inHand = new Handful(pieces, null, this.#liveOf(this.document), this.document);
     return true;
   }
 
@@ -251,7 +252,7 @@ export class OpenLay {
     const lifted = tablePieces(edit.document, this.book).filter((each) => each.id === id);
     this.picked = [];
     this.carried = { x: 0, y: 0 };
-    this.inHand = new Handful(lifted, piece, this.#liveOf(edit.document));
+    this.inHand = new Handful(lifted, piece, this.#liveOf(edit.document), edit.document);
     return true;
   }
 
@@ -259,7 +260,7 @@ export class OpenLay {
   carry(step: Point): void {
     const hand = this.inHand;
     if (!hand) return;
-    const to = { x: snap(step.x), y: snap(step.y) };
+    const to = this.#landing(hand, step);
     if (to.x === this.carried.x && to.y === this.carried.y) return;
     this.carried = to;
     // A check that rested is asked again once the hand is still.
@@ -267,6 +268,15 @@ export class OpenLay {
     this.#cancelCatchUp = this.world.later(() => {
       if (this.inHand === hand && hand.behind(this.carried)) this.carried = { ...this.carried };
     }, 80);
+  }
+
+  /** The step that a held piece makes: a single one is drawn to the fold and to its matching places. */
+  #landing(hand: Handful, step: Point): Point {
+    const [piece, more] = hand.pieces;
+    if (!piece || more) return { x: snap(step.x), y: snap(step.y) };
+    const { document } = hand;
+    const landed = landing(document, this.book, stepped(piece.placement, step), hand.moving);
+    return { x: snap(landed.x - piece.placement.x), y: snap(landed.y - piece.placement.y) };
   }
 
   /** Lays down what is in hand: on the cloth, or back on the Rail. */
@@ -278,10 +288,8 @@ export class OpenLay {
     if (hand.fromRail) {
       if (where === 'rail') return;
       const [piece] = hand.pieces;
-      const middle = {
-        x: (piece!.box.minX + piece!.box.maxX) / 2,
-        y: (piece!.box.minY + piece!.box.maxY) / 2
-      };
+      // Of the whole piece, whether or not it lies on the fold.
+      const middle = middleOf([boxOf(piece!.panel, piece!.placement)]);
       if (
         this.do(
           commands.placeFromRail(

@@ -15,7 +15,8 @@ export interface Desk {
   readonly table: TableView;
   /** Panels of the screen that a command opens. */
   readonly open: (
-    sheet: 'help' | 'copy' | 'cloth' | 'release' | 'keep' | 'revisions' | 'settle' | 'pieces'
+    sheet:
+      'help' | 'copy' | 'cloth' | 'spread' | 'match' | 'release' | 'keep' | 'revisions' | 'settle' | 'pieces'
   ) => void;
 }
 
@@ -362,6 +363,22 @@ export const tableCommands: readonly TableCommand[] = [
     keys: ['E'],
     enabled: writable,
     perform: ({ open }) => open('cloth')
+  },
+  {
+    id: 'spread',
+    label: 'How the cloth is spread: open, folded, in plies',
+    group: 'Lay',
+    keys: ['D'],
+    enabled: writable,
+    perform: ({ open }) => open('spread')
+  },
+  {
+    id: 'match',
+    label: 'Stripes, checks and flaws',
+    group: 'Lay',
+    keys: ['J'],
+    enabled: writable,
+    perform: ({ open }) => open('match')
   },
   {
     id: 'keep',

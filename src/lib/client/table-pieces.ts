@@ -3,8 +3,10 @@ import { boundingBox, contains } from '$lib/geometry/polygon';
 import type { Box, Point } from '$lib/geometry/point';
 import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import { panelOf, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
-import { flipIsFree, handAsLaid } from '$lib/lay/yields';
+import { laidShape } from '$lib/lay/on-fold';
+import { laidHand } from '$lib/lay/yields';
 import type { Hand } from '$lib/pattern/panel';
+import type { PieceShape } from '$lib/pattern/piece-shape';
 
 /*
  * The placements of a lay made ready for the table: with their panel, box and hand. A placement that did not change
@@ -15,11 +17,13 @@ export interface TablePiece {
   readonly id: string;
   readonly placement: LayPlacement;
   readonly panel: LayPanel;
+  /** What is cut where it lies: its half on the fold, else the whole. */
+  readonly shape: PieceShape;
   readonly box: Box;
   /** Which garment of the lay, counted from 0. */
   readonly garment: number;
-  /** null where a flip changes nothing. */
-  readonly hand: Hand | null;
+  /** null where a flip changes nothing; 'pair' where the layers give both. */
+  readonly hand: Hand | 'pair' | null;
 }
 
 const ready = new WeakMap<LayPlacement, { piece: TablePiece; strip: LayDocument['strip'] }>();
@@ -37,13 +41,16 @@ export function tablePieces(document: LayDocument, book: PanelBook): TablePiece[
     const garment = garments.get(placement.garment);
     const panel = panelOf(book, garment?.garment, placement.panel);
     if (!panel) continue;
+    const shape = laidShape(panel, placement, document.strip);
+    const hand = laidHand(placement, panel, document.strip);
     const piece: TablePiece = {
       id: placement.id,
       placement,
       panel,
-      box: boundingBox(placeOutline(panel.shape.cut, placement)),
+      shape,
+      box: boundingBox(placeOutline(shape.cut, placement)),
       garment: garment?.i ?? 0,
-      hand: flipIsFree(panel, document.strip) ? null : handAsLaid(placement, panel, document.strip)
+      hand: hand === 'either' ? null : hand
     };
     ready.set(placement, { piece, strip: document.strip });
     pieces.push(piece);
@@ -66,8 +73,8 @@ export function pieceAt(pieces: readonly TablePiece[], point: Point, reach: numb
     )
       continue;
     const own = unplace(point, piece.placement);
-    if (contains(piece.panel.shape.cut, own)) return piece;
-    const away = distanceTo(piece.panel.shape.cut, own);
+    if (contains(piece.shape.cut, own)) return piece;
+    const away = distanceTo(piece.shape.cut, own);
     if (away < least) {
       least = away;
       nearest = piece;
@@ -105,8 +112,8 @@ export function piecesWithin(pieces: readonly TablePiece[], box: Box): TablePiec
     const inside = (p: Point): boolean =>
       p.x >= box.minX && p.x <= box.maxX && p.y >= box.minY && p.y <= box.maxY;
     return (
-      piece.panel.shape.cut.some((point) => inside(place(point, piece.placement))) ||
-      contains(piece.panel.shape.cut, unplace({ x: box.minX, y: box.minY }, piece.placement))
+      piece.shape.cut.some((point) => inside(place(point, piece.placement))) ||
+      contains(piece.shape.cut, unplace({ x: box.minX, y: box.minY }, piece.placement))
     );
   });
 }

@@ -152,6 +152,13 @@ export function choiceOf(strip: Pick<Strip, 'spread' | 'usableWidth'>): SpreadCh
   };
 }
 
+/** The choice that opens a cloth into a single ply: the side that the ply beneath a fold has up stays up. */
+export function openingOf(strip: Pick<Strip, 'spread'>): SpreadChoice {
+  const { layers } = strip.spread[0]!;
+  const stays = spreadKind(strip) === 'lengthwise' ? layers[1]! : layers[0]!;
+  return { ...openChoice, sideUp: stays.sideUp };
+}
+
 /** How many lengths of the cloth lie on one another: what the length of a lay is counted times when cloth is bought. */
 export function lengthsSpread(strip: Pick<Strip, 'spread'>): number {
   const kind = spreadKind(strip);

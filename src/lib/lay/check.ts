@@ -2,6 +2,7 @@ import type { LayDocument } from './document';
 import { findingsBetween } from './findings-between';
 import { findingsOfCounts } from './findings-counts';
 import { findingsEach } from './findings-each';
+import { findingsOfSpread } from './findings-spread';
 import type { PanelBook } from './panel-book';
 import { placedPieces } from './placed';
 import { readingsOf } from './readings';
@@ -20,9 +21,14 @@ const worstFirst: readonly FindingKind[] = [
   'outside-length',
   'outside-edge',
   'flaw',
+  'straddles',
+  'spread-nap',
+  'near-fold',
   'clearance',
   'against-nap',
   'wrong-hand',
+  'repeat',
+  'mismatch',
   'shrinkage',
   'off-grain',
   'missing',
@@ -39,6 +45,7 @@ export function check(document: LayDocument, book: PanelBook): Verdict {
     findings: [
       ...findingsBetween(document, book, placed),
       ...findingsEach(document, book, placed),
+      ...findingsOfSpread(document, book, placed),
       ...findingsOfCounts(document, book, placed)
     ].sort(byWeight)
   };

@@ -1,8 +1,10 @@
 import { cosSin, snapPlacement, snapTurn } from '$lib/geometry/placement';
-import type { Point } from '$lib/geometry/point';
+import { snap, type Point } from '$lib/geometry/point';
 import type { Degrees, Millimetres } from '$lib/units/measure';
 import type { LayDocument } from './document';
 import { boxOf, centred, chosen, middleOf, replaced, subject, type Edit, type Ids } from './edit';
+import { sideOn } from './borders';
+import { landing, steppedLanding } from './landing';
 import { balance, type LoosePiece } from './needs';
 import { panelOf, type PanelBook } from './panel-book';
 import { allowedTurns, nearestTurn, nextTurn, withinTolerance } from './turns';
@@ -50,8 +52,10 @@ export function placeFromRail(
     },
     at
   );
+  const laid = { ...document, placements: [...document.placements, placement] };
+  const landed = landing(laid, book, placement, new Set([id]));
   return {
-    document: { ...document, placements: [...document.placements, placement] },
+    document: replaced(laid, [{ ...landed, ...snapPlacement(landed) }]),
     said: `${name} placed on the cloth.`
   };
 }
@@ -66,15 +70,27 @@ export function move(
 ): Edit {
   const picked = chosen(document, book, ids);
   if ('refused' in picked) return picked;
-  const moved = picked.free.map(({ placement }) => ({
-    ...placement,
-    ...snapPlacement({ ...placement, x: placement.x + dx, y: placement.y + dy })
-  }));
+  if (dx === 0 && dy === 0) return { refused: 'The pieces are where they were.' };
+  const moving = new Set(picked.free.map(({ placement }) => placement.id));
+  const moved = picked.free.map(({ placement }) => {
+    const next =
+      picked.free.length === 1
+        ? steppedLanding(document, book, placement, { x: dx, y: dy }, moving)
+        : { ...placement, x: placement.x + dx, y: placement.y + dy };
+    return { ...next, ...snapPlacement(next) };
+  });
+  const [first, now] = [picked.free[0]!.placement, moved[0]!];
+  const [wentX, wentY] = [snap(now.x - first.x), snap(now.y - first.y)];
   const parts = [
-    dx === 0 ? '' : `${millimetres(Math.abs(dx))} towards the ${dx > 0 ? 'end' : 'start'}`,
-    dy === 0 ? '' : `${millimetres(Math.abs(dy))} towards the ${dy > 0 ? 'far' : 'near'} selvedge`
+    wentX === 0 ? '' : `${millimetres(Math.abs(wentX))} towards the ${wentX > 0 ? 'end' : 'start'}`,
+    wentY === 0
+      ? ''
+      : `${millimetres(Math.abs(wentY))} towards ${sideOn(wentY > 0 ? 'far' : 'near', document.strip)}`
   ].filter((part) => part !== '');
-  if (parts.length === 0) return { refused: 'The pieces are where they were.' };
+  if (parts.length === 0)
+    return {
+      refused: `${subject(document, book, picked)} stays: it lies on the fold or on its matching place.`
+    };
   return {
     document: replaced(document, moved),
     said: `${subject(document, book, picked)} moved ${parts.join(' and ')}.`

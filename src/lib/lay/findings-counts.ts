@@ -1,12 +1,12 @@
 import { enlargesUnequally } from '$lib/cloth/shrinkage';
 import type { Hand } from '$lib/pattern/panel';
-import type { LayDocument, NeedHand } from './document';
+import type { LayDocument, LayPlacement, NeedHand } from './document';
 import { balance, panelOfPlacement, type LoosePiece, type Surplus } from './needs';
 import { panelKey, panelOf, type LayPanel, type PanelBook } from './panel-book';
 import type { PlacedPiece } from './placed';
 import type { Finding, FindingKind } from './verdict';
 import { nameOf, pieceName, pieces } from './wording';
-import { flipIsFree, handAsLaid, otherHand } from './yields';
+import { flipIsFree, handAsLaid, otherHand, yields } from './yields';
 
 /** What is wrong with the count of pieces: missing, surplus, of the wrong hand, unpaired, not known, not confirmed. */
 export function findingsOfCounts(
@@ -116,7 +116,25 @@ function surplusPiece(document: LayDocument, book: PanelBook, one: Surplus): Fin
     placements: [one.placement],
     subject: { garment: one.garment, panel: one.panel, hand: one.hand },
     measure: { value: one.count, unit: 'pieces' },
-    message: `${nameOf(document, book, placement)} is on the cloth, but the order asks for no more of it: ${pieces(one.count)} too many.`
+    ...(oneHanded(document, book, placement, one) ?? {
+      message: `${nameOf(document, book, placement)} is on the cloth, but the order asks for no more of it: ${pieces(one.count)} too many.`
+    })
+  };
+}
+
+/** A piece that is asked for by one hand only, under a layer that gives the other one, too. */
+function oneHanded(
+  document: LayDocument,
+  book: PanelBook,
+  placement: LayPlacement,
+  one: Surplus
+): Pick<Finding, 'offer' | 'message'> | null {
+  const panel = panelNamed(document, book, one.garment, one.panel);
+  if (!panel || yields(placement, panel, document.strip).reduce((sum, { count }) => sum + count, 0) < 2)
+    return null;
+  return {
+    offer: 'open-cloth',
+    message: `${nameOf(document, book, placement)} lies where the cloth has several layers: ${pieces(one.count)}${flipIsFree(panel, document.strip) ? '' : ` (${one.hand})`} too many would be cut. Lay it on a single layer, or open the cloth.`
   };
 }
 

@@ -7,9 +7,10 @@ import { overhang, sideOn, type StripSide } from './borders';
 import type { LayDocument } from './document';
 import { CLEARANCE_SLACK } from './findings-between';
 import { flawBox, mayCoverFlaws, roomToFlaw } from './flaw-room';
+import { hasRepeat } from './matching';
 import type { PanelBook } from './panel-book';
 import type { PlacedPiece } from './placed';
-import { againstNap, beyondTolerance, offGrain, way } from './turns';
+import { againstNap, beyondTolerance, offGrain, toleranceOn, way } from './turns';
 import type { Finding, FindingKind } from './verdict';
 import { degrees, millimetres, nameOf } from './wording';
 
@@ -99,7 +100,7 @@ function turned(document: LayDocument, book: PanelBook, piece: PlacedPiece): Fin
   const { panel, placement, outline } = piece;
   const name = nameOf(document, book, placement);
   const findings: Finding[] = [];
-  if (beyondTolerance(panel, placement.turn)) {
+  if (beyondTolerance(panel, document.strip, placement.turn)) {
     const off = offGrain(panel, placement.turn);
     findings.push(
       stops(
@@ -107,7 +108,7 @@ function turned(document: LayDocument, book: PanelBook, piece: PlacedPiece): Fin
         'off-grain',
         { value: off, unit: 'degrees' },
         outline.inner,
-        `${name} lies ${degrees(off)} off grain; its tolerance is ${degrees(panel.grainTolerance)}.`
+        `${name} lies ${degrees(off)} off grain; its tolerance ${hasRepeat(document.strip) ? 'on stripes and checks ' : ''}is ${degrees(toleranceOn(panel, document.strip))}.`
       )
     );
   }

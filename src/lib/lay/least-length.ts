@@ -47,7 +47,9 @@ export function leastLength(
     reason: { kind: 'area', area: total, width }
   };
   for (const { panel } of wanted) {
-    const length = shortest(panel, strip);
+    // On a fold across the cloth a piece is as long as its half.
+    const halved = strip.spread[0]!.fold === 'start' && panel.shape.foldLine !== null;
+    const length = shortest(panel, strip) / (halved ? 2 : 1);
     if (length > best.length) best = { length, reason: { kind: 'longest', panel: panel.shape.name, length } };
   }
   const grown = withBlade(wanted, strip);

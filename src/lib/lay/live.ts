@@ -109,7 +109,7 @@ function liveOf(document: LayDocument, book: PanelBook, all: readonly PlacedPiec
           overlaps: [...overlaps, ...among[i]!],
           nearest,
           offGrain: offGrain(panel, placement.turn),
-          beyondTolerance: beyondTolerance(panel, placement.turn),
+          beyondTolerance: beyondTolerance(panel, strip, placement.turn),
           againstNap: againstNap(panel, strip, placement.turn),
           outside: overhang(own.box, strip),
           overEdge: strip.given?.outline ? outside(outlineOf(own), strip.given.outline).depth : 0,

@@ -62,10 +62,15 @@ export function offGrain(panel: Turned, turn: Degrees): Degrees {
   return turns === null ? 0 : Math.min(...turns.map((allowed) => angleBetween(turn, allowed)));
 }
 
-/** Whether `turn` is further off grain than the panel's tolerance. */
-export function beyondTolerance(panel: Turned, turn: Degrees): boolean {
+/** How far off grain a panel may lie on this cloth: stripes and checks allow no tilt at all. */
+export function toleranceOn(panel: Turned, strip: Pick<Strip, 'repeat'>): Degrees {
+  return strip.repeat.along || strip.repeat.across ? 0 : panel.grainTolerance;
+}
+
+/** Whether `turn` is further off grain than the panel's tolerance on this cloth. */
+export function beyondTolerance(panel: Turned, strip: Pick<Strip, 'repeat'>, turn: Degrees): boolean {
   // Half a step of the grid of turns: a piece exactly at its tolerance is within it.
-  return offGrain(panel, turn) > panel.grainTolerance + 0.00005;
+  return offGrain(panel, turn) > toleranceOn(panel, strip) + 0.00005;
 }
 
 /** The allowed turn nearest to `turn`; `turn` itself when any turn will do or none is allowed. */
@@ -85,7 +90,8 @@ export function withinTolerance(panel: Turned, strip: Strip, turn: Degrees): Deg
   }
   const nearest = nearestTurn(panel, strip, turn);
   const off = signedTurn(turn - nearest);
-  return snapTurn(nearest + Math.max(-panel.grainTolerance, Math.min(panel.grainTolerance, off)));
+  const tolerance = toleranceOn(panel, strip);
+  return snapTurn(nearest + Math.max(-tolerance, Math.min(tolerance, off)));
 }
 
 /**

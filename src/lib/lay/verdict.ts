@@ -49,6 +49,11 @@ export const findingKinds = [
   'unknown-panel',
   'grain-unconfirmed',
   'flaw',
+  'straddles',
+  'near-fold',
+  'spread-nap',
+  'repeat',
+  'mismatch',
   'shrinkage',
   'stop-style-replaced'
 ] as const;
@@ -70,6 +75,8 @@ export interface Finding {
   readonly region: readonly Outline[];
   readonly area: SquareMillimetres | null;
   readonly box: Box | null;
+  /** What the person may do about it at once: open the cloth into a single ply. */
+  readonly offer?: 'open-cloth';
   /** In plain English, with names and measures in millimetres. */
   readonly message: string;
 }

@@ -73,9 +73,9 @@ describe('off grain', () => {
 
   it('lets a piece lie exactly at its tolerance and no step further', () => {
     const tolerant = turned('bothWays', 1.5);
-    expect(beyondTolerance(tolerant, 1.5)).toBe(false);
-    expect(beyondTolerance(tolerant, 358.5)).toBe(false);
-    expect(beyondTolerance(tolerant, 1.5001)).toBe(true);
+    expect(beyondTolerance(tolerant, strip(), 1.5)).toBe(false);
+    expect(beyondTolerance(tolerant, strip(), 358.5)).toBe(false);
+    expect(beyondTolerance(tolerant, strip(), 1.5001)).toBe(true);
   });
 });
 
@@ -100,7 +100,7 @@ describe('turning', () => {
           const piece = turned(turns, tolerance);
           const cloth = strip({ nap });
           const kept = withinTolerance(piece, cloth, turn);
-          expect(beyondTolerance(piece, kept)).toBe(false);
+          expect(beyondTolerance(piece, strip(), kept)).toBe(false);
           expect(againstNap(piece, cloth, kept)).toBe(false);
           expect(withinTolerance(piece, cloth, kept)).toBeCloseTo(kept, 6);
           for (const step of [1, -1] as const)

@@ -49,6 +49,7 @@ export function readingWords(readings: Readings, unit: LengthUnit): ReadingWords
       { name: 'Length used', value: short(buy.lengthUsed, unit) },
       { name: 'Zero end', value: `+ ${short(buy.start, unit)}` },
       { name: 'Far end', value: `+ ${short(buy.end, unit)}` },
+      ...added('Further plies', buy.furtherPlies),
       ...added('Splices', buy.splices),
       { name: 'Reserve', value: `+ ${short(buy.reserve, unit)}` },
       ...added('Shrinking', buy.shrinkage),

@@ -1,5 +1,8 @@
 import { seen, toScreen, type Viewport } from '$lib/client/viewport';
-import { sideUp, type Flaw, type Strip } from '$lib/cloth/strip';
+import { hasBothSides, sideMargin, spreadKind, spreadWords } from '$lib/cloth/spread';
+import { laidWidth, sideUp, type Flaw, type Strip } from '$lib/cloth/strip';
+import { foldsOf } from '$lib/lay/on-fold';
+import { drawCrosswiseFold, drawFold, drawLayers, drawRepeat } from './spread';
 import { dyes, inkOn, mix } from './dyes';
 
 /*
@@ -44,33 +47,44 @@ function rectangle(
 /** Draws the cloth. The canvas is in pixels. */
 export function drawCloth(ctx: CanvasRenderingContext2D, view: Viewport, look: ClothLook): void {
   const { strip, colour, drawnTo } = look;
-  const width = strip.usableWidth;
-  const selvedge = Math.max(6 / view.scale, (strip.fullWidth - width) / 2);
+  const width = laidWidth(strip);
+  const selvedge = Math.max(6 / view.scale, sideMargin(strip));
   const start = -strip.endAllowance.start;
   const end = strip.length === null ? drawnTo : strip.length + strip.endAllowance.end;
+  const folds = foldsOf(strip);
+  const near = folds.some(({ side }) => side === 'near');
+  const far = folds.some(({ side }) => side === 'far');
+  const [below, above] = [near ? 0 : -selvedge, width + (far ? 0 : selvedge)];
 
   ctx.fillStyle = 'rgba(35, 38, 43, 0.10)';
   ctx.save();
   ctx.translate(3, 5);
-  rectangle(ctx, view, start, -selvedge, end, width + selvedge);
+  rectangle(ctx, view, start, below, end, above);
   ctx.restore();
 
   ctx.fillStyle = colour;
-  rectangle(ctx, view, start, -selvedge, end, width + selvedge);
+  rectangle(ctx, view, start, below, end, above);
   drawThreads(ctx, view, look, start, end);
-  drawSelvedge(ctx, view, colour, start, end, -selvedge, 0);
-  drawSelvedge(ctx, view, colour, start, end, width, width + selvedge);
+  if (strip.repeat.along || strip.repeat.across) drawRepeat(ctx, view, look, start, end);
+  drawLayers(ctx, view, look, start, end);
+  const edge = (fold: boolean, from: number, to: number): void =>
+    fold
+      ? drawFold(ctx, view, colour, start, end, from < 0 ? 0 : width)
+      : drawSelvedge(ctx, view, colour, start, end, from, to);
+  edge(near, -selvedge, 0);
+  edge(far, width, width + selvedge);
 
   // Before the zero end lies the allowance that is cut square or lost.
   ctx.fillStyle = hatch(ctx, inkOn(colour, 0.28));
-  if (strip.endAllowance.start > 0) rectangle(ctx, view, start, -selvedge, 0, width + selvedge);
+  if (strip.endAllowance.start > 0) rectangle(ctx, view, start, below, 0, above);
   if (strip.length !== null && strip.endAllowance.end > 0)
-    rectangle(ctx, view, strip.length, -selvedge, end, width + selvedge);
+    rectangle(ctx, view, strip.length, below, end, above);
 
-  chalkLine(ctx, view, 0, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
-  if (strip.length === null) drawRoll(ctx, view, colour, end, -selvedge, width + selvedge);
-  else chalkLine(ctx, view, strip.length, -selvedge, width + selvedge, inkOn(colour, 0.85), 2);
+  chalkLine(ctx, view, 0, below, above, inkOn(colour, 0.85), 2);
+  if (strip.length === null) drawRoll(ctx, view, colour, end, below, above);
+  else chalkLine(ctx, view, strip.length, below, above, inkOn(colour, 0.85), 2);
   if (strip.given?.outline) drawBeyondEdge(ctx, view, look, start, end, selvedge);
+  if (folds.some(({ side }) => side === 'start')) drawCrosswiseFold(ctx, view, colour, below, above);
   for (const flaw of strip.flaws) drawFlaw(ctx, view, flaw);
 }
 
@@ -119,10 +133,10 @@ function drawThreads(
     path.lineTo(b.left, b.top);
   };
   const firstRow = Math.max(0, Math.floor(inSight.minY / gap));
-  const lastRow = Math.min(Math.floor(strip.usableWidth / gap), Math.ceil(inSight.maxY / gap));
+  const lastRow = Math.min(Math.floor(laidWidth(strip) / gap), Math.ceil(inSight.maxY / gap));
   for (let row = firstRow; row <= lastRow; row++) {
     const y = (row + 0.5) * gap;
-    if (y >= strip.usableWidth) continue;
+    if (y >= laidWidth(strip)) continue;
     const shift = row % 2 === 0 ? 0 : stride / 2;
     for (let k = Math.floor((fromX - shift) / stride); k * stride + shift < toX; k++) {
       const x = k * stride + shift;
@@ -246,8 +260,8 @@ function drawBeyondEdge(
   ring([
     { x: start, y: -selvedge },
     { x: end, y: -selvedge },
-    { x: end, y: strip.usableWidth + selvedge },
-    { x: start, y: strip.usableWidth + selvedge }
+    { x: end, y: laidWidth(strip) + selvedge },
+    { x: start, y: laidWidth(strip) + selvedge }
   ]);
   ring(edge);
   ctx.fillStyle = 'rgba(246, 241, 231, 0.88)';
@@ -285,10 +299,15 @@ export function hatch(ctx: CanvasRenderingContext2D, ink: string, gap = 8): Canv
   return ctx.createPattern(tile, 'repeat') ?? ink;
 }
 
-/** Which side of the cloth is up, in words. */
+/** How the cloth lies, in words: its spread, and which side is up. */
 export function sideUpWords(strip: Strip): string {
-  if (strip.sidesAlike) return 'Both sides of the cloth are alike';
-  return sideUp(strip) === 'right' ? 'Right side of the cloth up' : 'Wrong side of the cloth up';
+  const side = strip.sidesAlike
+    ? 'both sides of the cloth are alike'
+    : `${sideUp(strip) === 'right' ? 'right' : 'wrong'} side of the cloth up`;
+  const spread = spreadKind(strip);
+  if (spread === 'open') return side[0]!.toUpperCase() + side.slice(1);
+  const gives = hasBothSides(strip) ? ', each placement gives left and right' : '';
+  return `${spreadWords(strip)}, ${side}${gives}`;
 }
 
 /** The nap, in words. */

@@ -1,5 +1,5 @@
 import { toScreen, type ScreenPoint, type Viewport } from '$lib/client/viewport';
-import type { Strip } from '$lib/cloth/strip';
+import { laidWidth, type Strip } from '$lib/cloth/strip';
 import type { Outline, Point } from '$lib/geometry/point';
 import { hatch } from './cloth';
 import { dyes } from './dyes';
@@ -61,7 +61,7 @@ export function drawOverlay(
   drawChosen(ctx, view, overlay, ratio);
   for (const distance of overlay.distances) drawDistance(ctx, view, distance);
   const selvedge = Math.max(6 / view.scale, (overlay.strip.fullWidth - overlay.strip.usableWidth) / 2);
-  drawTapes(ctx, view, overlay.unit, overlay.drawnTo, overlay.strip.usableWidth, selvedge);
+  drawTapes(ctx, view, overlay.unit, overlay.drawnTo, laidWidth(overlay.strip), selvedge);
   for (const note of overlay.notes) {
     const at = toScreen(view, note.at);
     const within = {
@@ -91,7 +91,7 @@ function drawChosen(ctx: CanvasRenderingContext2D, view: Viewport, overlay: Over
 function drawLengthUsed(ctx: CanvasRenderingContext2D, view: Viewport, overlay: Overlay): void {
   if (overlay.lengthUsed <= 0) return;
   const a = toScreen(view, { x: overlay.lengthUsed, y: -20 });
-  const b = toScreen(view, { x: overlay.lengthUsed, y: overlay.strip.usableWidth + 20 });
+  const b = toScreen(view, { x: overlay.lengthUsed, y: laidWidth(overlay.strip) + 20 });
   const [at, extent] = view.lie === 'across' ? [a.left, view.width] : [a.top, view.height];
   if (at < 0 || at > extent) return;
   ctx.beginPath();
