@@ -1,7 +1,8 @@
-import { flatten, type Path } from '$lib/geometry/path';
+import { flatten, pathLength, placeAt, type Path } from '$lib/geometry/path';
 import type { Point } from '$lib/geometry/point';
 import { boundingBox } from '$lib/geometry/polygon';
-import { edgePath } from '$lib/pattern/flat-edge';
+import { cutLine } from '$lib/pattern/allowance';
+import { edgePath, flatEdges, outlineOfEdges } from '$lib/pattern/flat-edge';
 import type { Panel } from '$lib/pattern/panel';
 import type { Sheet } from './construction';
 
@@ -79,18 +80,31 @@ export function sheetFigure(sheet: Sheet, steps = sheet.steps.length, title = 'C
   );
 }
 
-/** The panels side by side at one scale, sew lines with notches, folds, grain and names. */
+const asDrawn = (point: Point): Point => point;
+
+/** A panel's cut line as drawn, its fold not opened; the outline itself where nothing is added to it. */
+function cutOf(panel: Panel): readonly Point[] {
+  const edges = flatEdges(panel, asDrawn);
+  const adds = panel.drawn === 'sew' && edges.some(({ allowance }) => allowance > 0);
+  return adds ? cutLine(edges) : outlineOfEdges(edges);
+}
+
+/** A panel's notches as strokes across its allowances, `least` long where there are none. */
+function notchMarks(panel: Panel, least: number): (readonly [Point, Point])[] {
+  return panel.notches.flatMap((notch) => {
+    const edge = panel.edges.find(({ id }) => id === notch.edge);
+    if (!edge) return [];
+    const path = edgePath(edge, asDrawn);
+    const { point, tangent } = placeAt(path, Math.min(notch.distance, pathLength(path)));
+    const out = panel.drawn === 'sew' && edge.allowance > 0 ? edge.allowance : -least;
+    return [[point, { x: point.x + tangent.y * out, y: point.y - tangent.x * out }] as const];
+  });
+}
+
+/** The panels side by side at one scale: sew and cut lines, notches, folds, grain and names. */
 export function panelsFigure(panels: readonly Panel[], title = 'Panels'): string {
-  const boxes = panels.map((panel) =>
-    boundingBox(
-      panel.edges.flatMap((edge) =>
-        flatten(
-          edgePath(edge, (p) => p),
-          1
-        )
-      )
-    )
-  );
+  const cuts = panels.map(cutOf);
+  const boxes = cuts.map((cut) => boundingBox(cut));
   const tallest = Math.max(...boxes.map((box) => box.maxY - box.minY), 1);
   /** Rows this wide read well beside text. */
   const wide = Math.max(tallest * 2.6, ...boxes.map((box) => box.maxX - box.minX));
@@ -121,6 +135,14 @@ export function panelsFigure(panels: readonly Panel[], title = 'Panels'): string
         true
       )}" stroke-width="${number(tallest * 0.004)}"${fold ? ` stroke-dasharray="${number(gap * 0.35)} ${number(gap * 0.15)} ${number(gap * 0.05)} ${number(gap * 0.15)}"` : ''}/>`;
     });
+    const outer =
+      panel.drawn === 'sew'
+        ? `<path d="M${cuts[i]!.map(({ x: px, y: py }) => at({ x: px, y: -py })).join(' L')} Z" stroke-width="${number(tallest * 0.002)}" opacity="0.7"/>`
+        : '';
+    const notches = notchMarks(panel, tallest * 0.015).map(
+      ([from, to]) =>
+        `<path d="M${at({ x: from.x, y: -from.y })} L${at({ x: to.x, y: -to.y })}" stroke-width="${number(tallest * 0.003)}"/>`
+    );
     const inside = panel.internalLines.map(
       ({ path }) =>
         `<path d="${svgPath(path, true)}" stroke-width="${number(tallest * 0.002)}" stroke-dasharray="${number(gap * 0.12)} ${number(gap * 0.12)}"/>`
@@ -129,7 +151,7 @@ export function panelsFigure(panels: readonly Panel[], title = 'Panels'): string
     const grain = `<path d="M${at({ x: from.x, y: -from.y })} L${at({ x: to.x, y: -to.y })}" stroke-width="${number(tallest * 0.002)}" opacity="0.6"/>`;
     return (
       `<g transform="translate(${number(dx)} ${number(dy)})">` +
-      `<g fill="none" stroke="currentColor" stroke-linecap="round" stroke-linejoin="round">${lines.join('')}${inside.join('')}${grain}</g>` +
+      `<g fill="none" stroke="currentColor" stroke-linecap="round" stroke-linejoin="round">${outer}${lines.join('')}${notches.join('')}${inside.join('')}${grain}</g>` +
       `<text x="${number(box.minX)}" y="${number(-box.minY + text * 1.6)}" font-size="${number(text)}" fill="currentColor">${escaped(panel.name)}</text></g>`
     );
   });
