@@ -1,6 +1,7 @@
 import { snap } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
-import { openSpread, type Flaw, type Given, type Strip } from './strip';
+import { choiceOf, foldDepths, spreadOf } from './spread';
+import type { Flaw, Given, Strip } from './strip';
 import { asLaid } from './shrinkage';
 
 /*
@@ -35,7 +36,7 @@ export function onMeasuredLength(strip: Strip, measured: MeasuredLength): Strip 
     length: along(measured.length),
     usableWidth,
     fullWidth,
-    spread: withWidth(strip, usableWidth),
+    spread: withWidth(strip, { usableWidth, fullWidth }),
     flaws: measured.flaws.map((flaw) => ({
       ...flaw,
       x: along(flaw.x),
@@ -48,11 +49,13 @@ export function onMeasuredLength(strip: Strip, measured: MeasuredLength): Strip 
   return withEnds(laid, endAllowance);
 }
 
-/** The spread on another usable width; a strip whose width stays keeps its own. */
-export function withWidth(strip: Strip, usableWidth: Millimetres): Strip['spread'] {
-  return usableWidth === strip.usableWidth
-    ? strip.spread
-    : openSpread(usableWidth, strip.spread[0]!.layers[0]!.sideUp);
+/** The same kind of spread on another usable width; a strip whose width stays keeps its own. */
+export function withWidth(strip: Strip, width: Pick<Strip, 'usableWidth' | 'fullWidth'>): Strip['spread'] {
+  if (width.usableWidth === strip.usableWidth) return strip.spread;
+  const choice = choiceOf(strip);
+  const { least, most } = foldDepths(width);
+  const depth = choice.depth === null || choice.depth < least || choice.depth > most ? null : choice.depth;
+  return spreadOf(width, { ...choice, depth });
 }
 
 /** `strip` with other end allowances: on a measured length the lay begins and ends elsewhere, so that its flaws and edge move. */

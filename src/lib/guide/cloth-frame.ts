@@ -1,3 +1,4 @@
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
 import { sideUp, type Given, type Strip } from '$lib/cloth/strip';
 import type { Box, Outline, Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
@@ -56,7 +57,7 @@ export function clothFrame(strip: Strip, pieces: readonly LaidPiece[], lengthUse
     ),
     near,
     far,
-    flaws: strip.flaws.map((flaw) => {
+    flaws: flawsAsLaid(strip).map((flaw) => {
       const reach = { x: flaw.along / 2 + flaw.radius, y: flaw.across / 2 + flaw.radius };
       return {
         minX: flaw.x - reach.x,

@@ -1,11 +1,14 @@
 import { enlargesUnequally } from '$lib/cloth/shrinkage';
+import { spreadKind } from '$lib/cloth/spread';
 import type { Hand } from '$lib/pattern/panel';
 import type { LayDocument, LayPlacement, NeedHand } from './document';
 import { balance, panelOfPlacement, type LoosePiece, type Surplus } from './needs';
 import { panelKey, panelOf, type LayPanel, type PanelBook } from './panel-book';
+import { CLEARANCE_SLACK } from './findings-between';
 import type { PlacedPiece } from './placed';
+import { readingsOf } from './readings';
 import type { Finding, FindingKind } from './verdict';
-import { nameOf, pieceName, pieces } from './wording';
+import { millimetres, nameOf, pieceName, pieces } from './wording';
 import { flipIsFree, handAsLaid, otherHand, yields } from './yields';
 
 /** What is wrong with the count of pieces: missing, surplus, of the wrong hand, unpaired, not known, not confirmed. */
@@ -23,6 +26,7 @@ export function findingsOfCounts(
     ...extra.map((one) => surplusPiece(document, book, one)),
     ...unconfirmedGrain(document, book),
     ...shearedPanels(document, book),
+    ...notOnThisLength(document, book),
     ...unpaired(document, book, placed)
   ];
 }
@@ -188,6 +192,43 @@ function unconfirmedGrain(document: LayDocument, book: PanelBook): Finding[] {
     });
   }
   return [...found.values()];
+}
+
+/**
+ * What a roll or remnant can't be: an odd one is laid open, in one ply, and plies and splices take no more than there is. That
+ * no single piece lies beyond its end is said of the piece.
+ */
+function notOnThisLength(document: LayDocument, book: PanelBook): Finding[] {
+  const { strip } = document;
+  const { given, length, endAllowance } = strip;
+  if (!given || length === null) return [];
+  const found: Finding[] = [];
+  const stop = (kind: FindingKind, value: number | null, message: string): number =>
+    found.push({
+      ...nowhere,
+      kind,
+      severity: 'stops',
+      placements: [],
+      subject: null,
+      measure: value === null ? null : { value, unit: 'mm' },
+      message
+    });
+  if (given.outline && spreadKind(strip) !== 'open')
+    stop(
+      'outside-edge',
+      null,
+      `${given.name} has an odd outline: it can only be laid open, in a single ply.`
+    );
+  const whole = length + endAllowance.start + endAllowance.end;
+  const { lengthUsed, start, end, furtherPlies, splices } = readingsOf(document, book).clothToBuy;
+  const taken = lengthUsed + start + end + furtherPlies + splices;
+  if (furtherPlies + splices > 0 && taken > whole + CLEARANCE_SLACK)
+    stop(
+      'outside-length',
+      taken - whole,
+      `Plies, ends and splices take ${millimetres(taken)}; ${given.name} has ${millimetres(whole)}.`
+    );
+  return found;
 }
 
 /** Bias panels on cloth for which panels are enlarged more one way than the other: they would come out sheared. */

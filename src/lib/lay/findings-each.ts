@@ -1,6 +1,7 @@
 import type { Outline, Point } from '$lib/geometry/point';
 import { outside as reachOutside } from '$lib/geometry/outside';
 import { growBox } from '$lib/geometry/polygon';
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
 import { outlineOf } from '$lib/geometry/prepared';
 import { TOUCHING } from '$lib/geometry/tolerance';
 import { overhang, sideOn, type StripSide } from './borders';
@@ -154,7 +155,8 @@ function unlikeTheirGarment(
 }
 
 function onFlaws(document: LayDocument, book: PanelBook, piece: PlacedPiece): Finding[] {
-  const { flaws, clearance } = document.strip;
+  const { clearance } = document.strip;
+  const flaws = flawsAsLaid(document.strip);
   if (flaws.length === 0 || mayCoverFlaws(document, piece.placement)) return [];
   return flaws.flatMap((flaw) => {
     const needed = flaw.radius + clearance;

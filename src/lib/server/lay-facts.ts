@@ -336,7 +336,7 @@ export function stripWith(before: Strip, { cloth, length }: Pick<LayFacts, 'clot
     ...strip,
     fullWidth,
     usableWidth,
-    spread: withWidth(before, usableWidth),
+    spread: withWidth(before, { usableWidth, fullWidth }),
     ...(before.given === null ? {} : { given: null, length: null, flaws: [] })
   };
 }

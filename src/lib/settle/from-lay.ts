@@ -1,4 +1,5 @@
 import { spreadKind, spreadWords } from '$lib/cloth/spread';
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
 import type { Flaw, Strip } from '$lib/cloth/strip';
 import { placeOutline, snapPlacement } from '$lib/geometry/placement';
 import type { Outline } from '$lib/geometry/point';
@@ -93,7 +94,7 @@ export function fromLay(
       width: strip.usableWidth,
       length: strip.length,
       outline: strip.given?.outline ?? null,
-      keepOuts: strip.flaws.map(keepOutOf),
+      keepOuts: flawsAsLaid(strip).map(keepOutOf),
       clearance: strip.clearance,
       touching: TOUCHING,
       preferredSide: options.side ?? null,

@@ -1,5 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
+import { openChoice, spreadOf, type SpreadKind } from '$lib/cloth/spread';
 import type { Flaw } from '$lib/cloth/strip';
 import { outside } from '$lib/geometry/outside';
 import { area, boundingBox } from '$lib/geometry/polygon';
@@ -8,6 +10,7 @@ import { check } from '$lib/lay/check';
 import { enlargedPanel } from '$lib/lay/enlarged';
 import { toggleCover } from '$lib/lay/flaw-cover';
 import { openLayDocument } from '$lib/lay/stored-lay';
+import { fromLay } from '$lib/settle/from-lay';
 import { runs } from '../../runs';
 import { bookOf, ell, lay, panel, placement, rectangle, strip } from './workroom';
 
@@ -250,5 +253,70 @@ describe('a lay of the first schema', () => {
         mayCoverFlaws: []
       }
     });
+  });
+});
+
+describe('a roll that is spread in folds or plies', () => {
+  const spreadAs = (kind: SpreadKind, plies = 2, depth: number | null = null) =>
+    spreadOf(
+      { usableWidth: 1000, fullWidth: 1020 },
+      { ...openChoice, kind, plies, depth, turned: kind !== 'crosswise' }
+    );
+  const roll = (kind: SpreadKind, flaw: Flaw, plies = 2, depth: number | null = null) =>
+    strip({
+      length: 1960,
+      given: { ...given(null), kind: 'roll' },
+      spread: spreadAs(kind, plies, depth),
+      flaws: [flaw]
+    });
+  const flaw = { id: 'f', x: 500, y: 900, along: 0, across: 0, radius: 4, note: '' };
+  const places = (one: ReturnType<typeof roll>) => flawsAsLaid(one).map(({ x, y }) => [x, y]);
+
+  it('has its flaws where each layer comes to lie', () => {
+    expect(places(roll('open', flaw))).toEqual([[500, 900]]);
+    // The fold at half the width: 900 from the near selvedge is 400 from the fold.
+    expect(places(roll('lengthwise', flaw))).toEqual([[500, 400]]);
+    expect(places(roll('lengthwise', flaw, 2, 300))).toEqual([[500, 600]]);
+    expect(places(roll('lengthwise', { ...flaw, y: 100 }, 2, 300))).toEqual([[500, 200]]);
+    expect(places(roll('tubular', flaw))).toEqual([[500, 100]]);
+    // 2000 mm from end to end, folded at 1000: the flaw at 520 lies 480 from the fold.
+    expect(places(roll('crosswise', flaw))).toEqual([[480, 900]]);
+    // Four plies of 500 mm: 520 from the start is 20 into the second.
+    expect(places(roll('pliesUp', flaw, 4))).toEqual([[0, 900]]);
+    expect(places(roll('faceToFace', flaw, 2))).toContainEqual([500, 100]);
+  });
+
+  it('keeps a piece off a flaw of the layer below, for the check and for settle alike', () => {
+    const book = bookOf(panel('back', rectangle(300, 300)));
+    const document = lay(book, [placement('a', 'back', { x: 400, y: 250 })], roll('lengthwise', flaw));
+    expect(kinds(document, book)).toContain('flaw');
+    const { problem } = fromLay(document, book, { reach: 'all', from: 'scratch' });
+    const [keepOut] = problem.keepOuts;
+    expect(boundingBox(keepOut!)).toMatchObject({
+      minY: expect.closeTo(396, 0),
+      maxY: expect.closeTo(404, 0)
+    });
+  });
+
+  it('has no more plies and splices than its length', () => {
+    const book = bookOf(panel('back', rectangle(900, 300)));
+    const on = (plies: number, splices = 0) =>
+      check(
+        lay(book, [placement('a', 'back')], {
+          ...roll('pliesUp', { ...flaw, x: 0, y: 990 }, plies),
+          splices: { count: splices, each: 200 }
+        }),
+        book
+      ).findings.filter(({ kind }) => kind === 'outside-length');
+    expect(on(2)).toEqual([]);
+    // Three plies of 940 mm with their ends, of 2000.
+    expect(on(3)[0]).toMatchObject({ measure: { value: 820, unit: 'mm' } });
+    expect(on(2, 1)[0]).toMatchObject({ measure: { value: 80, unit: 'mm' } });
+  });
+
+  it('is laid open where its outline is odd', () => {
+    const book = bookOf(panel('back', rectangle(300, 300)));
+    const odd = { ...roll('lengthwise', flaw), given: given(rectangle(2000, 1000)) };
+    expect(kinds(lay(book, [placement('a', 'back', { x: 900 })], odd), book)).toContain('outside-edge');
   });
 });

@@ -1,4 +1,5 @@
 import { seen, toScreen, type Viewport } from '$lib/client/viewport';
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
 import { hasBothSides, sideMargin, spreadKind, spreadWords } from '$lib/cloth/spread';
 import { laidWidth, sideUp, type Flaw, type Strip } from '$lib/cloth/strip';
 import { foldsOf } from '$lib/lay/on-fold';
@@ -85,7 +86,7 @@ export function drawCloth(ctx: CanvasRenderingContext2D, view: Viewport, look: C
   else chalkLine(ctx, view, strip.length, below, above, inkOn(colour, 0.85), 2);
   if (strip.given?.outline) drawBeyondEdge(ctx, view, look, start, end, selvedge);
   if (folds.some(({ side }) => side === 'start')) drawCrosswiseFold(ctx, view, colour, below, above);
-  for (const flaw of strip.flaws) drawFlaw(ctx, view, flaw);
+  for (const flaw of flawsAsLaid(strip)) drawFlaw(ctx, view, flaw);
 }
 
 function chalkLine(
