@@ -129,7 +129,9 @@ test('priced, quoted, agreed on a telephone, paid in two parts', async ({ page, 
   await phone.getByLabel('Your question').fill('May I come to the fitting in the evening?');
   await phone.getByRole('button', { name: 'Send the question' }).click();
   await expect(phone.getByText('Sent. We will write to you.')).toBeVisible();
-  expect((await mailTo('runa@hollin-lane.example', /a question from Ysolde/)).text).toContain('in the evening');
+  expect((await mailTo('runa@hollin-lane.example', /a question from Ysolde/)).text).toContain(
+    'in the evening'
+  );
 
   // The message about the balance is lost on its way: coming back to the page finds the money all the same.
   cards.lose = true;
