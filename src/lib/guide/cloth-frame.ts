@@ -1,9 +1,11 @@
 import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
-import { sideUp, type Given, type Strip } from '$lib/cloth/strip';
+import { sideMargin, spreadMarks } from '$lib/cloth/spread';
+import { laidWidth, type Given, type Strip } from '$lib/cloth/strip';
 import type { Box, Outline, Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
 import { formatDecimal, type LengthUnit } from '$lib/units/length';
 import { line, pen, words, type Mark } from './drawing';
+import { foldsOf } from '$lib/lay/on-fold';
 import type { LaidPiece } from './laid-piece';
 import { onTape } from './measure-words';
 
@@ -13,7 +15,7 @@ import { onTape } from './measure-words';
 
 /** The cloth of a lay as the guide shows it. */
 export interface ClothFrame {
-  /** The edges of the usable width: y = 0, and the far one. */
+  /** The edges of what may be laid on: y = 0, and this far one. */
   readonly usableWidth: Millimetres;
   /** Where the lay ends: the greatest x of its pieces. */
   readonly lengthUsed: Millimetres;
@@ -25,25 +27,28 @@ export interface ClothFrame {
   readonly far: 'fold' | 'selvedge';
   /** Flaws, each as the box that no piece may touch. */
   readonly flaws: readonly Box[];
+  /** Borders between cloth of one and of several layers. */
+  readonly borders: readonly { readonly y: Millimetres; readonly words: string }[];
+  readonly repeat: Strip['repeat'];
   /** The edge of an odd remnant; null for a whole width. */
   readonly edge: Outline | null;
 }
 
 /** The frame of a lay. A fold has no margin beside it; what the full width is wider is shared by the selvedges. */
 export function clothFrame(strip: Strip, pieces: readonly LaidPiece[], lengthUsed: Millimetres): ClothFrame {
-  const near = strip.spread.some((zone) => zone.fold === 'near') ? 'fold' : 'selvedge';
-  const far = strip.spread.some((zone) => zone.fold === 'far') ? 'fold' : 'selvedge';
-  const spare = Math.max(0, strip.fullWidth - strip.usableWidth);
-  const selvedges = Number(near === 'selvedge') + Number(far === 'selvedge');
-  const margin = selvedges > 0 ? spare / selvedges : 0;
+  const folds = foldsOf(strip).map(({ side }) => side);
+  const near = folds.includes('near') ? 'fold' : 'selvedge';
+  const far = folds.includes('far') ? 'fold' : 'selvedge';
+  const margin = sideMargin(strip);
+  const width = laidWidth(strip);
   const cloth = {
     minX: -strip.endAllowance.start,
     maxX: Math.max(lengthUsed, 1) + strip.endAllowance.end,
     minY: near === 'fold' ? 0 : -margin,
-    maxY: strip.usableWidth + (far === 'fold' ? 0 : margin)
+    maxY: width + (far === 'fold' ? 0 : margin)
   };
   return {
-    usableWidth: strip.usableWidth,
+    usableWidth: width,
     lengthUsed,
     cloth,
     extent: pieces.reduce(
@@ -66,13 +71,43 @@ export function clothFrame(strip: Strip, pieces: readonly LaidPiece[], lengthUse
         maxY: flaw.y + reach.y
       };
     }),
+    borders: strip.spread.slice(1).map(({ from, layers }) => ({
+      y: from,
+      words:
+        layers.length === 0
+          ? 'selvedge of the upper ply'
+          : `${layers.length === 1 ? 'single layer' : `${layers.length} layers`} from here`
+    })),
+    repeat: strip.repeat,
     edge: strip.given?.outline ?? null
   };
 }
 
 const FLAW_PEN = pen(0.3, [2, 1]);
 
-/** The flaws crossed out and the edge of an odd remnant, through `at` to the paper. */
+const BORDER_PEN = pen(0.3, [8, 2, 2, 2]);
+const REPEAT_PEN = pen(0.12, [1, 2]);
+
+/** Where the lines of the repeat lie: along the warp from the zero line, across from y = 0. */
+function repeatLines({ repeat, cloth, usableWidth }: ClothFrame, at: (point: Point) => Point): Mark[] {
+  const { along, across } = repeat;
+  const marks: Mark[] = [];
+  if (along)
+    for (let k = Math.ceil((0 - along.offset) / along.size); ; k++) {
+      const x = along.offset + k * along.size;
+      if (x > cloth.maxX) break;
+      marks.push(line([at({ x, y: 0 }), at({ x, y: usableWidth })], REPEAT_PEN));
+    }
+  if (across)
+    for (let k = Math.ceil((0 - across.offset) / across.size); ; k++) {
+      const y = across.offset + k * across.size;
+      if (y > usableWidth) break;
+      marks.push(line([at({ x: cloth.minX, y }), at({ x: cloth.maxX, y })], REPEAT_PEN));
+    }
+  return marks;
+}
+
+/** The lines of the repeat, borders between layers, the flaws crossed out and the edge of an odd remnant, through `at` to the paper. */
 export function drawFlawsAndEdge(frame: ClothFrame, at: (point: Point) => Point = (point) => point): Mark[] {
   const crossed = frame.flaws.flatMap(({ minX, minY, maxX, maxY }) => {
     const corners = [
@@ -87,7 +122,14 @@ export function drawFlawsAndEdge(frame: ClothFrame, at: (point: Point) => Point 
       line([corners[1]!, corners[3]!], FLAW_PEN)
     ];
   });
-  return frame.edge ? [...crossed, line(frame.edge.map(at), EDGE_PEN, true)] : crossed;
+  return [
+    ...repeatLines(frame, at),
+    ...frame.borders.map(({ y }) =>
+      line([at({ x: frame.cloth.minX, y }), at({ x: frame.cloth.maxX, y })], BORDER_PEN)
+    ),
+    ...crossed,
+    ...(frame.edge ? [line(frame.edge.map(at), EDGE_PEN, true)] : [])
+  ];
 }
 
 export const EDGE_PEN = pen(0.35);
@@ -121,6 +163,9 @@ export function drawFrame(frame: ClothFrame, unit: LengthUnit): Mark[] {
   if (cloth.minX < 0) marks.push(across(cloth.minX, OUTER_PEN));
   if (cloth.maxX > lengthUsed) marks.push(across(cloth.maxX, OUTER_PEN));
   marks.push(...tape(frame, unit), ...drawFlawsAndEdge(frame));
+  for (const border of frame.borders)
+    for (let x = WORDS_STEP / 2; x < lengthUsed; x += 2 * WORDS_STEP)
+      marks.push(words({ x, y: border.y + 1.4 }, border.words, 3.6));
   for (const { minX, maxY } of frame.flaws) marks.push(words({ x: minX, y: maxY + 1.4 }, 'flaw', 3.6));
   for (let x = WORDS_STEP / 4; x < lengthUsed; x += WORDS_STEP) {
     marks.push(edgeWords({ x, y: 0 }, `near ${frame.near}`, 0, frame.near === 'fold' ? 0 : -cloth.minY, -1));
@@ -186,9 +231,22 @@ function tape(frame: ClothFrame, unit: LengthUnit): Mark[] {
   return marks;
 }
 
-/** Which side looks up, in words. */
+/** Which side looks up and what a placement gives, as it is printed: 'RIGHT SIDE UP · FOLD: gives L + R'. */
 export function sideUpWords(strip: Strip): string {
-  return strip.sidesAlike ? 'both sides alike' : `${sideUp(strip)} side up`;
+  return spreadMarks(strip).join(' · ');
+}
+
+/** The repeat of the cloth in words; null where it has none. */
+export function repeatWords({ repeat }: Strip, length: (mm: number) => string): string | null {
+  const parts = [
+    repeat.along &&
+      `${length(repeat.along.size)} along, first line ${length(repeat.along.offset)} from the zero line`,
+    repeat.across &&
+      `${length(repeat.across.size)} across, first line ${length(repeat.across.offset)} from the near edge`
+  ].filter((part) => part !== null);
+  if (parts.length === 0) return null;
+  const oneWay = [repeat.along, repeat.across].some((one) => one !== null && !one.symmetric);
+  return parts.join('; ') + (oneWay ? '; one way, no mirror image matches' : '');
 }
 
 /** The roll or remnant, as the workroom calls it, with its batch. */
@@ -216,17 +274,6 @@ export function shrinkingWords({ shrinkage }: Strip): string[] {
 /** Plies on the table, all zones' deepest. */
 export function plies(strip: Strip): number {
   return Math.max(...strip.spread.map((zone) => zone.layers.length));
-}
-
-/** How the cloth lies, in words: 'open, one ply'. */
-export function spreadWords(strip: Strip): string {
-  const count = plies(strip);
-  const folded = strip.spread.some((zone) => zone.fold !== 'none');
-  if (folded) return strip.spread.length > 1 ? 'partly folded lengthwise' : 'folded lengthwise';
-  if (count === 1) return 'open';
-  const layers = strip.spread[0]!.layers;
-  const facing = layers.some((layer) => layer.sideUp !== layers[0]!.sideUp);
-  return facing ? 'face to face' : 'all facing the same way';
 }
 
 /** Whether and which way the nap runs on the top ply: along the warp arrow, against it, or not at all. */

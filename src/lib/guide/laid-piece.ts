@@ -1,9 +1,11 @@
 import { place, placeOutline, type Placement } from '$lib/geometry/placement';
 import type { Box, Outline, Point } from '$lib/geometry/point';
 import { boundingBox } from '$lib/geometry/polygon';
-import type { LayDocument, NeedHand } from '$lib/lay/document';
+import type { LayDocument } from '$lib/lay/document';
 import { panelOf, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
-import { yields } from '$lib/lay/yields';
+import { foldUnder, laidShape } from '$lib/lay/on-fold';
+import { laidHand, yieldCount, type LaidHand } from '$lib/lay/yields';
+import { halfShape } from '$lib/pattern/half';
 import type { PieceShape } from '$lib/pattern/piece-shape';
 import type { Millimetres } from '$lib/units/measure';
 
@@ -25,7 +27,7 @@ export interface LaidPiece {
   readonly number: number;
   readonly panel: string;
   readonly garment: string;
-  readonly hand: NeedHand;
+  readonly hand: LaidHand;
   /** How many pieces the placement gives on this spread. */
   readonly copies: number;
   readonly placement: Placement;
@@ -37,6 +39,8 @@ export interface LaidPiece {
   readonly drillHoles: readonly { readonly at: Point; readonly note: string }[];
   readonly internalLines: readonly { readonly points: readonly Point[]; readonly note: string }[];
   readonly foldLine: { readonly from: Point; readonly to: Point } | null;
+  /** Whether it is cut as a half, its fold line on a fold of the cloth. */
+  readonly onFold: boolean;
   readonly grain: { readonly from: Point; readonly to: Point };
   readonly label: Point;
   readonly box: Box;
@@ -90,13 +94,12 @@ function sameOutline(a: Outline, b: Outline): boolean {
   return a.length === b.length && a.every((p, i) => p.x === b[i]!.x && p.y === b[i]!.y);
 }
 
-/** `panel` laid at `placement`; what it gives and for whom is said by the caller. */
+/** `shape`, a whole piece or its half, laid at `placement`; what it gives and for whom is said by the caller. */
 export function layPiece(
-  panel: LayPanel,
+  shape: PieceShape,
   placement: Placement,
-  about: Pick<LaidPiece, 'number' | 'garment' | 'hand' | 'copies'>
+  about: Pick<LaidPiece, 'number' | 'garment' | 'hand' | 'copies' | 'onFold'>
 ): LaidPiece {
-  const { shape } = panel;
   const at = (point: Point): Point => place(point, placement);
   const cut = placeOutline(shape.cut, placement);
   return {
@@ -119,12 +122,12 @@ export function layPiece(
   };
 }
 
-/** What a placement gives, in one: the hand (either where two hands come of it) and the count. */
+/** What a placement gives, in one: the hand ('pair' where both come of it), the count, and whether it lies on the fold. */
 function giving(document: LayDocument, panel: LayPanel, placement: LayDocument['placements'][number]) {
-  const given = yields(placement, panel, document.strip);
   return {
-    hand: given.length === 1 ? given[0]!.hand : ('either' as const),
-    copies: given.reduce((sum, one) => sum + one.count, 0)
+    hand: laidHand(placement, panel, document.strip),
+    copies: yieldCount(placement, panel, document.strip),
+    onFold: foldUnder(panel, placement, document.strip) !== null
   };
 }
 
@@ -139,7 +142,7 @@ export function layPieces(document: LayDocument, panels: PanelBook): LaidPiece[]
     const panel = panelOf(panels, garment, placement.panel);
     if (!garment || !panel)
       throw new Error(`The revision lacks panel ${placement.panel} of garment ${placement.garment}`);
-    return layPiece(panel, placement, {
+    return layPiece(laidShape(panel, placement, document.strip), placement, {
       number: 0,
       garment: garment.label,
       ...giving(document, panel, placement)
@@ -162,7 +165,7 @@ export interface LonePanel {
 export function lonePanels(document: LayDocument, panels: PanelBook): LonePanel[] {
   const found = new Map<
     string,
-    { panel: LayPanel; flip: boolean; hand: NeedHand; cuts: Map<string, number> }
+    { shape: PieceShape; flip: boolean; hand: LaidHand; onFold: boolean; cuts: Map<string, number> }
   >();
   const garments = new Map(document.garments.map((garment) => [garment.id, garment]));
   for (const placement of document.placements) {
@@ -170,22 +173,29 @@ export function lonePanels(document: LayDocument, panels: PanelBook): LonePanel[
     const panel = panelOf(panels, garment, placement.panel);
     if (!garment || !panel)
       throw new Error(`The revision lacks panel ${placement.panel} of garment ${placement.garment}`);
-    const { hand, copies } = giving(document, panel, placement);
+    const { hand, copies, onFold } = giving(document, panel, placement);
     // A mirrored copy of a piece that is its own mirror image is the same drawing.
     const flip = placement.flip && !panel.shape.symmetric;
-    const key = `${garment.styleVersion}/${placement.panel}/${flip}`;
-    const entry = found.get(key) ?? { panel, flip, hand, cuts: new Map<string, number>() };
+    const key = `${garment.styleVersion}/${placement.panel}/${flip}/${onFold}`;
+    const entry = found.get(key) ?? {
+      // Every half is drawn the same way up.
+      shape: onFold ? halfShape(panel.shape, 1) : panel.shape,
+      flip,
+      hand,
+      onFold,
+      cuts: new Map<string, number>()
+    };
     entry.cuts.set(garment.label, (entry.cuts.get(garment.label) ?? 0) + copies);
     found.set(key, entry);
   }
-  return [...found.values()].map(({ panel, flip, hand, cuts }, i) => {
-    const lying = boundingBox(placeOutline(panel.shape.cut, { x: 0, y: 0, turn: 0, flip }));
+  return [...found.values()].map(({ shape, flip, hand, onFold, cuts }, i) => {
+    const lying = boundingBox(placeOutline(shape.cut, { x: 0, y: 0, turn: 0, flip }));
     const copies = [...cuts.values()].reduce((sum, n) => sum + n, 0);
     return {
       piece: layPiece(
-        panel,
+        shape,
         { x: -lying.minX, y: -lying.minY, turn: 0, flip },
-        { number: i + 1, garment: [...cuts.keys()].join(', '), hand, copies }
+        { number: i + 1, garment: [...cuts.keys()].join(', '), hand, copies, onFold }
       ),
       cuts: [...cuts].map(([garment, n]) => ({ garment, copies: n }))
     };

@@ -1,6 +1,6 @@
-import type { Point } from '$lib/geometry/point';
+import type { Outline, Point } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
-import { arrowHead, CAPITAL, line, pen, ring, words, type Lettering, type Mark } from './drawing';
+import { arrowHead, CAPITAL, line, pen, ring, words, type Lettering, type Mark, type Pen } from './drawing';
 import { placeLabel } from './label-place';
 import type { LaidPiece } from './laid-piece';
 
@@ -13,6 +13,8 @@ export const CUT_PEN = pen(0.5);
 const SEW_PEN = pen(0.25, [3, 2]);
 const INNER_PEN = pen(0.25, [1, 1.5]);
 const FOLD_PEN = pen(0.25, [8, 2, 2, 2]);
+/** The fold edge of a half: bold, so that nobody takes it for a cut. */
+const ON_FOLD_PEN = pen(0.6, [8, 2, 2, 2]);
 const GRAIN_PEN = pen(0.35);
 const THIN = pen(0.2);
 
@@ -30,15 +32,19 @@ export interface LabelWords {
 
 /** The hand of a piece in words; empty where it has none. */
 export function handWords(hand: LaidPiece['hand']): string {
+  if (hand === 'pair') return 'left + right';
   return hand === 'either' ? '' : `${hand} hand`;
 }
 
 /** Everything of `piece`, in cloth coordinates. */
 export function drawPiece(piece: LaidPiece, label: LabelWords, lettering: Lettering): Mark[] {
   const marks: Mark[] = [];
-  if (piece.sew) marks.push(line(piece.sew, SEW_PEN, true));
+  if (piece.sew) marks.push(alongEdge(piece, piece.sew, SEW_PEN));
   for (const { points } of piece.internalLines) marks.push(line(points, INNER_PEN));
-  if (piece.foldLine) marks.push(line([piece.foldLine.from, piece.foldLine.to], FOLD_PEN));
+  if (piece.foldLine) {
+    marks.push(line([piece.foldLine.from, piece.foldLine.to], piece.onFold ? ON_FOLD_PEN : FOLD_PEN));
+    if (piece.onFold) marks.push(foldWords(piece, piece.foldLine));
+  }
   marks.push(line([piece.grain.from, piece.grain.to], GRAIN_PEN));
   marks.push(arrowHead(piece.grain.from, piece.grain.to, 7));
   if (label.bothWays) marks.push(arrowHead(piece.grain.to, piece.grain.from, 7));
@@ -50,8 +56,40 @@ export function drawPiece(piece: LaidPiece, label: LabelWords, lettering: Letter
     marks.push(tick(notch.sew, notch.edge));
   }
   for (const outline of piece.cutOuts) marks.push(line(outline, CUT_PEN, true));
-  marks.push(line(piece.cut, CUT_PEN, true));
+  marks.push(alongEdge(piece, piece.cut, CUT_PEN));
   return marks;
+}
+
+/** An outline of a piece; of one on the fold without the fold edge, which is not cut. */
+export function alongEdge(piece: LaidPiece, outline: Outline, withPen: Pen): Mark {
+  const open = piece.onFold && piece.foldLine ? withoutFold(outline, piece.foldLine) : null;
+  return open ? line(open, withPen) : line(outline, withPen, true);
+}
+
+/** The outline from one end of its stretch on the fold to the other; null where none of it lies there. */
+function withoutFold(outline: Outline, fold: NonNullable<LaidPiece['foldLine']>): Outline | null {
+  const along = Math.abs(fold.to.x - fold.from.x) > Math.abs(fold.to.y - fold.from.y);
+  const on = (p: Point): boolean => Math.abs(along ? p.y - fold.from.y : p.x - fold.from.x) < 0.002;
+  const count = outline.length;
+  const at = outline.findIndex((p, i) => on(p) && on(outline[(i + 1) % count]!));
+  return at < 0 ? null : Array.from({ length: count }, (_, i) => outline[(at + 1 + i) % count]!);
+}
+
+/** 'FOLD: not cut here', along the fold edge of a half, inside it. */
+function foldWords(piece: LaidPiece, { from, to }: NonNullable<LaidPiece['foldLine']>): Mark {
+  const middle = { x: (from.x + to.x) / 2, y: (from.y + to.y) / 2 };
+  const upright = Math.abs(to.y - from.y) > Math.abs(to.x - from.x);
+  const size = 3.6;
+  const inside = upright ? piece.label.x > middle.x : piece.label.y > middle.y;
+  const off = inside ? 1.6 : -1.6 - size * 0.7;
+  const at = upright
+    ? { x: middle.x - (inside ? -1.6 - size * 0.7 : 1.6), y: middle.y }
+    : { x: middle.x, y: middle.y + off };
+  return words(at, 'FOLD: this edge lies on the fold and is not cut', size, {
+    align: 'middle',
+    turn: upright ? 90 : 0,
+    weight: 'bold'
+  });
 }
 
 /** A short stroke across a notch's own line, where it stands on the sew line. */

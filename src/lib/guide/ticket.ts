@@ -1,12 +1,14 @@
+import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
 import type { Box } from '$lib/geometry/point';
 import { formatDecimal } from '$lib/units/length';
+import { hasBothSides, lengthsSpread, spreadWords } from '$lib/cloth/spread';
 import {
   napWords,
+  repeatWords,
   plies,
   sideUpWords,
   givenWords,
   shrinkingWords,
-  spreadWords,
   type ClothFrame
 } from './cloth-frame';
 import { DeskPage, setTable, type Desk } from './desk-page';
@@ -151,8 +153,9 @@ function facts(
     ['Up', sideUpWords(strip)],
     ...(strip.given ? [['Cut from', givenWords(strip.given)] satisfies [string, string]] : []),
     ...shrinkingWords(strip).map((words): [string, string] => ['Shrinking', words]),
-    ['Spread', `${spreadWords(strip)}, ${plies(strip) === 1 ? 'single ply' : `${plies(strip)} plies`}`],
+    ['Spread', spreadWords(strip)],
     ['Nap', napWords(strip)],
+    ...matchRows(input, length),
     ['Length of the lay', length(frame.lengthUsed)],
     [
       'Cloth it takes',
@@ -182,6 +185,30 @@ function facts(
   page.top = top - rows.length * row - 2.5;
   page.rule();
   page.top -= 1;
+}
+
+/** What to mind of repeat, matching and flaws; nothing where the cloth has none. */
+function matchRows(input: GuideInput, length: (mm: number) => string): [string, string][] {
+  const { strip, rules } = input.document;
+  const rows: [string, string][] = [];
+  const repeat = repeatWords(strip, length);
+  if (repeat) rows.push(['Repeat', repeat]);
+  if (repeat && rules.matchGroups.length > 0)
+    rows.push([
+      'Matching',
+      `${rules.matchGroups.length} ${rules.matchGroups.length === 1 ? 'group' : 'groups'} of points, within ${length(rules.matchTolerance)}${hasBothSides(strip) || lengthsSpread(strip) > 1 ? '; pin all layers line on line' : ''}`
+    ]);
+  const flaws = flawsAsLaid(strip);
+  if (flaws.length > 0) {
+    const near = flaws
+      .slice(0, 3)
+      .map(({ x, y, note }) => `${length(x)} / ${length(y)}${note ? ` ${note}` : ''}`);
+    rows.push([
+      flaws.length === 1 ? 'Flaw' : 'Flaws',
+      `${near.join(', ')}${flaws.length > 3 ? ` and ${flaws.length - 3} more` : ''} (along / across)`
+    ]);
+  }
+  return rows;
 }
 
 /** Two squares that share their lower left corner, and inside them what to set in the print dialogue. */

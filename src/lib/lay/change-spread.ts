@@ -147,9 +147,14 @@ export function unfolded(document: LayDocument, book: PanelBook): LayDocument {
         ...strip.repeat,
         across: across && { ...across, offset: modulo(across.offset + depth, across.size) }
       },
-      flaws: strip.flaws.map((flaw) => ({ ...flaw, y: snap(flaw.y + depth) }))
+      flaws: movedFlaws(strip, depth)
     }
   };
+}
+
+/** Flaws noted as they lie go with the ply beneath; those of a measured length are told from its own selvedge anyway. */
+function movedFlaws({ flaws, given }: Strip, by: Millimetres): Strip['flaws'] {
+  return given ? flaws : flaws.map((flaw) => ({ ...flaw, y: snap(flaw.y + by) }));
 }
 
 function freeId(id: string, taken: Set<string>): string {
@@ -170,10 +175,6 @@ function folded(document: LayDocument, book: PanelBook, spread: Strip['spread'])
       const panel = panelOfPlacement(document, book, one);
       return panel && !one.locked && boxOf(panel, moved).maxY <= 0 ? [] : [moved];
     }),
-    strip: onLine({
-      ...strip,
-      spread,
-      flaws: strip.flaws.map((flaw) => ({ ...flaw, y: snap(flaw.y - depth) }))
-    })
+    strip: onLine({ ...strip, spread, flaws: movedFlaws(strip, -depth) })
   };
 }

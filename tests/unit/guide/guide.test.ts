@@ -30,8 +30,8 @@ describe('the ticket', () => {
       'Ada dress 38 · 1',
       'Wool crêpe, deep green',
       '150 cm, usable 148 cm',
-      'right side up',
-      'open, single ply',
+      'RIGHT SIDE UP',
+      'Open, single ply',
       '167.5 cm',
       'Bodice front, left hand',
       'Bodice front, right hand',
@@ -130,7 +130,7 @@ describe('every sheet', () => {
       expect(text).toMatch(/Order 27 · revision 3 · 1a2b 3c4d 5e6f · Day dress, main cloth/);
       expect(text).toMatch(/\bwarp\b/);
       expect(text).toMatch(/\bnap\b/);
-      expect(text).toContain('right side up');
+      expect(text).toContain('RIGHT SIDE UP');
       expect(text).toMatch(/Corner: zero [−+] [\d.]+ mm, near selvedge [−+] [\d.]+ mm/);
       expect(page.texts.filter(({ text: one }) => one === '100 mm')).toHaveLength(2);
       expect(text).not.toContain('RELEASED');
@@ -173,8 +173,8 @@ describe('every sheet', () => {
     };
     const { pages, sheetPages } = await pagesOf(sampleInput(folded));
     expect(sheetPages.map(textOf).join(' ')).toContain('near fold');
-    expect(textOf(pages[0]!)).toContain('folded lengthwise, 2 plies');
-    expect(textOf(pages[0]!)).toContain('wrong side up');
+    expect(textOf(pages[0]!)).toContain('Folded lengthwise, selvedge on selvedge');
+    expect(textOf(pages[0]!)).toContain('WRONG SIDE UP · FOLD: gives L + R');
   });
 });
 
