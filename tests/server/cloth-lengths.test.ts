@@ -98,6 +98,8 @@ describe('lengths at hand', () => {
     expect(outcomes.map(({ status }) => status).sort()).toEqual(['fulfilled', 'rejected']);
     const taken = await clothLengths.read(owner(), id);
     expect(taken.state).toBe('reserved');
+    const { number: taker } = await cast.db('orders').where({ id: taken.order!.id }).first('number');
+    expect(taken.order!.number).toBe(taker);
     const loser = taken.order!.id === rows.order ? other.order : rows.order;
     await expect(
       clothLengths.reserve(owner(), id, { version: taken.version, orderId: loser })

@@ -117,7 +117,7 @@ function query(scope: Scope, db: Knex = database()): Knex.QueryBuilder {
   return db('cloth_lengths')
     .leftJoin('orders', 'orders.id', 'cloth_lengths.order_id')
     .where({ 'cloth_lengths.studio_id': scope.studio })
-    .select(own, { order_number: 'orders.number' })
+    .select([...own, 'orders.number as order_number'])
     .select(may(scope.role, 'prices: see') ? ['cloth_lengths.price', 'cloth_lengths.price_unit'] : []);
 }
 
