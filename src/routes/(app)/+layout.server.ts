@@ -11,6 +11,12 @@ export const load: LayoutServerLoad = ({ locals, url }) => {
     ? [
         { href: '/orders', word: 'Orders' },
         { href: '/lays', word: 'Lays' },
+        ...(may(scope.role, 'measurements: see')
+          ? [
+              { href: '/clients', word: 'Clients' },
+              { href: '/drafts', word: 'Drafts' }
+            ]
+          : []),
         { href: '/styles', word: 'Styles' },
         { href: '/cloths', word: 'Cloths' },
         ...(may(scope.role, 'people: manage') ? [{ href: '/people', word: 'People' }] : []),
