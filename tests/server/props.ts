@@ -2,10 +2,12 @@ import { readFileSync } from 'node:fs';
 import { guideChoiceSchema } from '$lib/guide/guide-choice';
 import sharp from 'sharp';
 import type { LayDocument } from '$lib/lay/document';
+import * as clients from '$lib/server/clients';
 import * as clothLengths from '$lib/server/cloth-lengths';
 import * as clothWidths from '$lib/server/cloth-widths';
 import * as clientLinks from '$lib/server/client-links';
 import { database } from '$lib/server/database';
+import * as draftRuns from '$lib/server/draft-runs';
 import * as guides from '$lib/server/guides';
 import { newId } from '$lib/server/ids';
 import * as imports from '$lib/server/imports';
@@ -23,6 +25,8 @@ import * as prices from '$lib/server/prices';
 import * as quotes from '$lib/server/quotes';
 import type { Scope } from '$lib/server/scope';
 import * as sessions from '$lib/server/sessions';
+import * as measurementSets from '$lib/server/measurement-sets';
+import * as sizeCharts from '$lib/server/size-charts';
 import * as settleRuns from '$lib/server/settle-runs';
 import type { SettleBest } from '$lib/settle/run';
 import { cookieJar, type House } from './cast';
@@ -67,6 +71,10 @@ export interface Props {
   readonly payment: string;
   readonly clientLink: string;
   readonly question: string;
+  readonly client: string;
+  readonly measurementSet: string;
+  readonly sizeChart: string;
+  readonly draftRun: string;
   readonly invitation: string;
   /** The public id of a session of the owner. */
   readonly session: string;
@@ -81,7 +89,9 @@ export const secrets = [
   '87654321',
   '876543.21',
   '876,543.21',
-  'Mill by the weir'
+  'Mill by the weir',
+  'wendela@far.example',
+  '91.3 cm'
 ];
 
 /** Fills a house; the database is the application's. */
@@ -184,10 +194,34 @@ export async function makeProps(house: House): Promise<Props> {
     .update({ progress: JSON.stringify({ seconds: 1, evaluations: 1, turns: 1, best, ended: null }) });
   await jobs.stop(scope, settled);
   const money = await makeMoney(scope, rows);
+  const client = await clients.create(scope, {
+    name: 'Wendela',
+    email: 'wendela@far.example',
+    phone: '',
+    note: ''
+  });
+  const measurementSet = await measurementSets.create(scope, client, {
+    takenOn: '2026-05-31',
+    takenBy: 'Piet',
+    posture: '',
+    worn: '',
+    measured: [
+      { point: 'bust', side: 'both', mm: 913, typed: '91.3 cm', second: null },
+      { point: 'waist', side: 'both', mm: 720, typed: '72 cm', second: null }
+    ]
+  });
+  const sizeChart = await sizeCharts.create(scope, 'House sizes', [
+    { size: 'S', body: { waist: 680, hip: 940 } }
+  ]);
+  const draftRun = await draftRuns.create(scope, 'circle-skirt', { kind: 'set', set: measurementSet }, {});
   const jar = cookieJar();
   await sessions.start(jar, house.owner.id, house.id, 'another browser of the owner');
   return {
     studio: house.id,
+    client,
+    measurementSet,
+    sizeChart,
+    draftRun,
     cutter: house.cutter.id,
     order: rows.order,
     item: rows.item,

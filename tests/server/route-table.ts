@@ -222,6 +222,90 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     })
   },
 
+  // Clients, measurements, drafts.
+  '/clients load': { access: 'clients: see contact' },
+  '/clients/new load': { access: 'clients: see contact' },
+  '/clients/new ?/default': { access: 'clients: see contact', call: () => ({ form: { name: 'Marit' } }) },
+  '/clients/[id] load': { access: 'clients: see contact', call: (own) => params({ id: own.client }) },
+  '/clients/[id] ?/save': {
+    access: 'clients: see contact',
+    answers: [303, 409],
+    call: (own) => params({ id: own.client }, { form: { name: 'Wendela', version: '1' } })
+  },
+  '/clients/[id] ?/erase': {
+    access: 'clients: see contact',
+    answers: [400],
+    call: (own) => params({ id: own.client }, { form: { confirm: 'no' } })
+  },
+  '/clients/[id]/measurements/new load': {
+    access: 'measurements: see',
+    call: (own) => params({ id: own.client })
+  },
+  '/clients/[id]/measurements/new ?/default': {
+    access: 'measurements: see',
+    call: (own) =>
+      params({ id: own.client }, { form: { takenOn: '2026-06-01', takenBy: 'Piet', waist: '72 cm' } })
+  },
+  '/clients/[id]/measurements/[set] load': {
+    access: 'measurements: see',
+    call: (own) => params({ id: own.client, set: own.measurementSet }),
+    foreign: (own, other) => ({
+      set: { params: { id: own.client, set: own.measurementSet }, path: `/x?against=${other.measurementSet}` }
+    })
+  },
+  '/size-tables load': { access: 'measurements: see' },
+  '/size-tables ?/bringIn': {
+    access: 'measurements: see',
+    answers: [400],
+    call: () => ({ form: { name: 'Ours' } })
+  },
+  '/size-tables ?/remove': {
+    access: 'measurements: see',
+    // Two roles remove it: the second finds it gone.
+    answers: [303, 404],
+    call: (own) => ({ form: { id: own.sizeChart } }),
+    foreign: (_own, other) => ({ table: { form: { id: other.sizeChart } } })
+  },
+  '/size-tables/[id] GET': { access: 'measurements: see', call: (own) => params({ id: own.sizeChart }) },
+  '/drafts load': { access: 'measurements: see' },
+  '/drafts/[draft] load': {
+    access: 'measurements: see',
+    byCode: true,
+    call: (own) => ({ params: { draft: 'circle-skirt' }, path: `/x?set=${own.measurementSet}` }),
+    foreign: (_own, other) => ({
+      set: { params: { draft: 'circle-skirt' }, path: `/x?set=${other.measurementSet}` },
+      client: { params: { draft: 'circle-skirt' }, path: `/x?client=${other.client}` }
+    })
+  },
+  '/drafts/[draft] ?/preview': {
+    access: 'measurements: see',
+    byCode: true,
+    call: (own) => params({ draft: 'circle-skirt' }, { form: { source: `set:${own.measurementSet}` } }),
+    foreign: (_own, other) => ({
+      set: params({ draft: 'circle-skirt' }, { form: { source: `set:${other.measurementSet}` } }),
+      size: params({ draft: 'circle-skirt' }, { form: { source: `size:${other.sizeChart}:S` } })
+    })
+  },
+  '/drafts/[draft] ?/draw': {
+    access: 'measurements: see',
+    byCode: true,
+    answers: [303],
+    call: (own) => params({ draft: 'circle-skirt' }, { form: { source: `set:${own.measurementSet}` } }),
+    foreign: (_own, other) => ({
+      set: params({ draft: 'circle-skirt' }, { form: { source: `set:${other.measurementSet}` } }),
+      size: params({ draft: 'circle-skirt' }, { form: { source: `size:${other.sizeChart}:S` } })
+    })
+  },
+  '/drafts/runs/[id] load': { access: 'measurements: see', call: (own) => params({ id: own.draftRun }) },
+  '/drafts/runs/[id] ?/keep': {
+    access: 'styles: change',
+    answers: [303, 409],
+    call: (own) => params({ id: own.draftRun }, { form: { name: 'Kept skirt' } }),
+    foreign: (own, other) => ({
+      style: params({ id: own.draftRun }, { form: { style: `${other.style}:1` } })
+    })
+  },
+
   // Cloths.
   '/cloths load': { access: 'cloths: see' },
   '/cloths/new load': { access: 'cloths: change' },

@@ -33,6 +33,7 @@ export const actions: Actions = {
   },
   erase: async (event) => {
     const scope = allow(event, 'clients: see contact');
+    await orErrorPage(clients.read(scope, event.params.id));
     const form = await readForm(
       event.request,
       z.object({ confirm: z.literal('erase', { error: 'Type the word erase to go on.' }) })
