@@ -55,7 +55,9 @@ export const load: PageServerLoad = async (event) => {
     const its = priceOf(one.id);
     return its && fits(one) ? clothCost(one.toBuy.total, its.minor, its.unit) : null;
   };
-  const best = cheapest(onWidths?.tried ?? [], costOf);
+  // Said once all are tried: until then a cheaper one may come.
+  const compared = onWidths?.state === 'done' && onWidths.tried.length > 1 ? onWidths.tried : [];
+  const best = cheapest(compared, costOf);
   return {
     order: { id: order.id, number: order.number, clientName: order.clientName },
     cloth: { id: facts.cloth.id, name: facts.cloth.name, colour: facts.cloth.colour },
