@@ -1,4 +1,5 @@
 import { afterEach, beforeEach, describe, expect, test } from 'vitest';
+import { openChoice, spreadOf } from '$lib/cloth/spread';
 import type { LayDocument } from '$lib/lay/document';
 import type { Problem } from '$lib/server/problem';
 import * as layFacts from '$lib/server/lay-facts';
@@ -153,8 +154,7 @@ describe('saving', () => {
       { nap: 'oneWay' as const },
       { sidesAlike: true },
       { fullWidth: 2000 },
-      { buyStep: 1 },
-      { repeat: { along: { size: 50, offset: 0, symmetric: true }, across: null } }
+      { buyStep: 1 }
     ])
       expect(
         await refusal(
@@ -203,13 +203,20 @@ describe('saving', () => {
     expect((await lays.read(scope, id)).version).toBe(1);
   });
 
-  test('refuses a fold or plies while only open cloth is offered', async () => {
+  test('keeps a fold and a repeat, and refuses layers that are none of the spreads', async () => {
     const { document } = await lays.read(scope, id);
+    const spread = spreadOf(document.strip, { ...openChoice, kind: 'lengthwise', depth: 300 });
+    const repeat = { along: { size: 80, offset: 5, symmetric: true }, across: null };
+    const folded = { ...document, strip: { ...document.strip, spread, repeat } };
+    await lays.save(scope, id, { version: 1, saveId: newId(), document: folded });
+    expect((await lays.read(scope, id)).document.strip).toMatchObject({ spread, repeat });
     const [zone] = document.strip.spread;
-    const strip = { ...document.strip, spread: [{ ...zone!, layers: [...zone!.layers, ...zone!.layers] }] };
+    const odd = { ...document.strip, spread: [{ ...zone!, fold: 'far' as const }] };
     expect(
-      await refusal(lays.save(scope, id, { version: 1, saveId: newId(), document: { ...document, strip } }))
-    ).toMatchObject({ status: 400, type: 'spread-not-offered' });
+      await refusal(
+        lays.save(scope, id, { version: 2, saveId: newId(), document: { ...document, strip: odd } })
+      )
+    ).toMatchObject({ status: 400 });
   });
 });
 

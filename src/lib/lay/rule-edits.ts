@@ -1,5 +1,4 @@
 import type { Strip } from '$lib/cloth/strip';
-import { snap } from '$lib/geometry/point';
 import type { Millimetres } from '$lib/units/measure';
 import type { LayDocument } from './document';
 import type { Edit } from './edit';
@@ -78,24 +77,15 @@ export function removeMatchGroup(document: LayDocument, id: string): Edit {
   };
 }
 
-/** Where the first line lies on the table, and how far off a match may be. What is left out stays. */
-export function setRepeat(
-  document: LayDocument,
-  to: { readonly along?: Millimetres; readonly across?: Millimetres; readonly tolerance?: Millimetres }
-): Edit {
-  const { repeat } = document.strip;
-  const moved = (of: Strip['repeat']['along'], offset: Millimetres | undefined): Strip['repeat']['along'] =>
-    of && offset !== undefined ? { ...of, offset: snap(offset) } : of;
+/** The repeat of the cloth as it lies on the table, and how far off a match may be. */
+export function setRepeat(document: LayDocument, repeat: Strip['repeat'], tolerance: Millimetres): Edit {
   return {
     document: {
       ...document,
-      strip: {
-        ...document.strip,
-        repeat: { along: moved(repeat.along, to.along), across: moved(repeat.across, to.across) }
-      },
-      rules: { ...document.rules, matchTolerance: to.tolerance ?? document.rules.matchTolerance }
+      strip: { ...document.strip, repeat },
+      rules: { ...document.rules, matchTolerance: tolerance }
     },
-    said: 'The repeat is set anew.'
+    said: repeat.along || repeat.across ? 'The repeat is set anew.' : 'The cloth has no repeat.'
   };
 }
 

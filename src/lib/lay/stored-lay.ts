@@ -3,6 +3,7 @@ import { choiceOf, spreadOf } from '$lib/cloth/spread';
 import { laidWidth, type Strip } from '$lib/cloth/strip';
 import { LAY_SCHEMA, layDocumentSchema, type Garment, type LayDocument } from './document';
 import { needsOf } from './needs';
+import { same } from './same';
 import type { LayPanel, PanelBook } from './panel-book';
 
 /*
@@ -155,9 +156,9 @@ function refuseOddSpread(strip: Strip): void {
   } catch (fault) {
     throw new UnreadableDocument(fault instanceof RangeError ? `${fault.message}.` : String(fault));
   }
-  if (edge !== laidWidth({ spread: expected }))
+  if (!same(strip.spread, expected))
     throw new UnreadableDocument(
-      `Expected the spread to end at ${laidWidth({ spread: expected })} mm on a usable width of ${strip.usableWidth} mm, got ${edge} mm.`
+      `Expected the spread to end at ${laidWidth({ spread: expected })} mm on a usable width of ${strip.usableWidth} mm, got ${edge} mm, or layers that are none of its spreads.`
     );
 }
 

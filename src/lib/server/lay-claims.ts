@@ -7,7 +7,7 @@ import { Problem } from './problem';
 
 /*
  * What a posted lay may say. The person decides where the pieces lie and what they measured on the table: usable width,
- * length, flaws, side up, end allowances, reserve, clearance. Garments, needs, full width, nap, sides, repeat, shrinking and
+ * length, flaws, spread, side up, repeat, end allowances, reserve, clearance. Garments, needs, full width, nap, sides, shrinking and
  * the step of buying are the order's and the cloth's; on a roll or remnant so are length, width, edge and flaws.
  */
 
@@ -15,7 +15,6 @@ const notTheirs: readonly (keyof Strip)[] = [
   'fullWidth',
   'nap',
   'sidesAlike',
-  'repeat',
   'buyStep',
   'shrinkage',
   'given'
@@ -57,13 +56,6 @@ export function refuseWhatIsNotTheirs(
     compare(field, posted.strip[field], now[field], stored.strip[field]);
   if (changed) return 'facts-changed';
   refuseStrangers(posted, stored, facts);
-  if (posted.strip.spread.length > 1 || posted.strip.spread[0]!.layers.length > 1)
-    throw new Problem(
-      400,
-      'spread-not-offered',
-      'Only open cloth in a single ply',
-      `Expected one zone with one layer, got ${posted.strip.spread.length} zones, ${posted.strip.spread[0]!.layers.length} layers.`
-    );
   return 'fits';
 }
 
