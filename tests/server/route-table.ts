@@ -566,6 +566,10 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     access: 'styles: change',
     call: (own) => params({ id: own.style }, { form: {} })
   },
+  '/styles/[id]/desk/[panel] load': {
+    access: 'styles: change',
+    call: (own) => params({ id: own.style, panel: own.layDocument.needs[0]!.panel })
+  },
   '/api/styles/[id]/desk GET': { access: 'styles: change', call: (own) => params({ id: own.style }) },
   '/api/styles/[id]/desk PUT': {
     access: 'styles: change',

@@ -1,26 +1,26 @@
 import type { LayDocument } from '$lib/lay/document';
-import { Offline, Refusal, type LayServer, type SavedByOther } from './lay-server';
+import { Offline, Refusal, type SaveAnswer, type SavedByOther } from './lay-server';
 import type { MovesStore, SentSave } from './unsaved-moves';
 
 /*
- * Saves the open lay by itself: shortly after a move, each save naming the version it was made from and an id of its
+ * Saves the open lay, or the working copy of the panel desk, by itself: shortly after a move, each save naming the version it was made from and an id of its
  * own. A save without an answer is sent again under the same id, so that it counts once. What is not acknowledged
  * stays in the browser's database.
  */
 
-export type SavingState =
+export type SavingState<Document = LayDocument> =
   | { readonly kind: 'saved'; readonly at: number | null }
   | { readonly kind: 'waiting' }
   | { readonly kind: 'saving' }
   /** No answer: tried again at `nextAt`. */
   | { readonly kind: 'offline'; readonly why: string; readonly nextAt: number }
-  | { readonly kind: 'conflict'; readonly theirs: SavedByOther }
+  | { readonly kind: 'conflict'; readonly theirs: SavedByOther<Document> }
   | { readonly kind: 'refused'; readonly why: string };
 
 /** What saving needs of the world; tests give their own. */
-export interface SavingWorld {
-  readonly server: Pick<LayServer, 'save'>;
-  readonly store: MovesStore;
+export interface SavingWorld<Document = LayDocument> {
+  readonly server: { save(save: SentSave<Document>, closing?: boolean): Promise<SaveAnswer> };
+  readonly store: MovesStore<Document>;
   readonly key: string;
   readonly now: () => number;
   readonly newId: () => string;
@@ -36,21 +36,21 @@ const QUIET_MS = 700;
 const FIRST_RETRY_MS = 1000;
 const LONGEST_RETRY_MS = 30_000;
 
-export class LaySaving {
-  state: SavingState = $state.raw({ kind: 'saved', at: null });
+export class LaySaving<Document = LayDocument> {
+  state: SavingState<Document> = $state.raw({ kind: 'saved', at: null });
   /** The version that the server last acknowledged, and its document. */
-  base: { version: number; document: LayDocument } = $state.raw()!;
-  #document: LayDocument;
-  #sent: SentSave | null = null;
+  base: { version: number; document: Document } = $state.raw()!;
+  #document: Document;
+  #sent: SentSave<Document> | null = null;
   #failures = 0;
   #cancel: (() => void) | null = null;
   #busy = false;
   #keeping: Promise<void> = Promise.resolve();
 
   constructor(
-    base: { version: number; document: LayDocument },
+    base: { version: number; document: Document },
     savedAt: number | null,
-    private readonly world: SavingWorld
+    private readonly world: SavingWorld<Document>
   ) {
     this.base = base;
     this.#document = base.document;
@@ -63,7 +63,7 @@ export class LaySaving {
   }
 
   /** Looks for moves of a former visit. Gives the document to go on with, or null when there are none. */
-  async recover(): Promise<LayDocument | null> {
+  async recover(): Promise<Document | null> {
     let kept;
     try {
       kept = await this.world.store.read(this.world.key);
@@ -83,7 +83,7 @@ export class LaySaving {
   }
 
   /** The lay was edited. */
-  edited(document: LayDocument): void {
+  edited(document: Document): void {
     if (document === this.#document) return;
     this.#document = document;
     if (this.state.kind === 'conflict' || this.state.kind === 'refused') {
@@ -106,7 +106,7 @@ export class LaySaving {
     try {
       // What was sent before and got no answer goes first, unchanged: it may have arrived.
       while (this.unsaved) {
-        const save: SentSave = (this.#sent ??= {
+        const save: SentSave<Document> = (this.#sent ??= {
           saveId: this.world.newId(),
           version: this.base.version,
           document: this.#document
@@ -129,7 +129,7 @@ export class LaySaving {
   }
 
   /** The person decided a conflict: `document` goes on from what the other person saved. */
-  resolve(document: LayDocument): void {
+  resolve(document: Document): void {
     if (this.state.kind !== 'conflict') return;
     const { theirs } = this.state;
     this.goOnFrom(theirs.version, theirs.document, theirs.savedAt);
@@ -138,7 +138,7 @@ export class LaySaving {
   }
 
   /** The server holds `document` as `version` now (restored, reopened, released). */
-  goOnFrom(version: number, document: LayDocument, at: number | null): void {
+  goOnFrom(version: number, document: Document, at: number | null): void {
     this.#sent = null;
     this.base = { version, document };
     this.#document = document;
@@ -158,9 +158,12 @@ export class LaySaving {
   }
 
   #failed(failure: unknown): void {
-    if (failure instanceof Refusal && failure.type === 'lay-out-of-date') {
+    if (
+      failure instanceof Refusal &&
+      (failure.type === 'lay-out-of-date' || failure.type === 'desk-out-of-date')
+    ) {
       this.#sent = null;
-      this.state = { kind: 'conflict', theirs: failure.extra.current as SavedByOther };
+      this.state = { kind: 'conflict', theirs: failure.extra.current as SavedByOther<Document> };
       this.#keep();
       return;
     }

@@ -66,9 +66,9 @@ export interface LayOnServer {
 }
 
 /** What another person saved in the meantime. */
-export interface SavedByOther {
+export interface SavedByOther<Document = LayDocument> {
   readonly version: number;
-  readonly document: LayDocument;
+  readonly document: Document;
   readonly savedBy: string;
   readonly savedAt: number;
 }

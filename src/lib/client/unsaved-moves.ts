@@ -6,25 +6,25 @@ import type { LayDocument } from '$lib/lay/document';
  */
 
 /** A save that was sent and may or may not have arrived: it is sent again under the same id. */
-export interface SentSave {
+export interface SentSave<Document = LayDocument> {
   readonly saveId: string;
   readonly version: number;
-  readonly document: LayDocument;
+  readonly document: Document;
 }
 
-export interface UnsavedMoves {
+export interface UnsavedMoves<Document = LayDocument> {
   /** The version and document that the moves were made from. */
-  readonly base: { readonly version: number; readonly document: LayDocument };
-  readonly document: LayDocument;
-  readonly sent: SentSave | null;
+  readonly base: { readonly version: number; readonly document: Document };
+  readonly document: Document;
+  readonly sent: SentSave<Document> | null;
   /** When the last of them was made, UTC milliseconds. */
   readonly movedAt: number;
 }
 
 /** Where unsaved moves are kept; the browser's database, or memory in tests. */
-export interface MovesStore {
-  read(key: string): Promise<UnsavedMoves | null>;
-  write(key: string, moves: UnsavedMoves): Promise<void>;
+export interface MovesStore<Document = LayDocument> {
+  read(key: string): Promise<UnsavedMoves<Document> | null>;
+  write(key: string, moves: UnsavedMoves<Document>): Promise<void>;
   forget(key: string): Promise<void>;
 }
 
@@ -59,12 +59,16 @@ async function inStore<T>(
 }
 
 /** The browser's own database. Each call rejects where the browser refuses it (private windows, full disks). */
-export const browserMoves: MovesStore = {
-  read: async (key) =>
-    ((await inStore('readonly', (store) => store.get(key))) as UnsavedMoves | undefined) ?? null,
-  write: async (key, moves) => void (await inStore('readwrite', (store) => store.put(moves, key))),
-  forget: async (key) => void (await inStore('readwrite', (store) => store.delete(key)))
-};
+export function browserStore<Document>(): MovesStore<Document> {
+  return {
+    read: async (key) =>
+      ((await inStore('readonly', (store) => store.get(key))) as UnsavedMoves<Document> | undefined) ?? null,
+    write: async (key, moves) => void (await inStore('readwrite', (store) => store.put(moves, key))),
+    forget: async (key) => void (await inStore('readwrite', (store) => store.delete(key)))
+  };
+}
+
+export const browserMoves: MovesStore = browserStore();
 
 /** The key of a person's moves on a lay. */
 export function movesKey(user: string, lay: string): string {
