@@ -52,9 +52,13 @@ export const load: PageServerLoad = async (event) => {
   const unit = event.locals.studio!.lengthUnit;
   const { options, client } = await sourcesOf(scope, params.get('client'), params.get('set'));
   const standard = params.get('set') ? `set:${params.get('set')}` : options[client ? 0 : 3]!.value;
+  const first = sourceOf(standard);
+  const { body } = first ? await orErrorPage(draftRuns.bodyOf(scope, first)) : { body: {} };
+  const drawn = drawDraft(draft, body);
   const { draw: _draw, ...words } = draft;
   return {
     draft: { ...words, needs: draft.needs.map((id) => ({ id, label: pointOf(id).label })) },
+    picture: drawn.ok ? panelsFigure(drawn.result.panels, draft.name) : null,
     sources: options,
     client,
     values: { source: standard, ...choiceTexts(draft.choices, unit) } as Record<string, string>,
