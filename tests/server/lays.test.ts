@@ -2,11 +2,14 @@ import { afterEach, beforeEach, describe, expect, test } from 'vitest';
 import { openChoice, spreadOf } from '$lib/cloth/spread';
 import type { LayDocument } from '$lib/lay/document';
 import type { Problem } from '$lib/server/problem';
+import * as guides from '$lib/server/guides';
 import * as layFacts from '$lib/server/lay-facts';
+import * as layList from '$lib/server/lay-list';
 import * as layRelease from '$lib/server/lay-release';
 import * as layRevisions from '$lib/server/lay-revisions';
 import * as lays from '$lib/server/lays';
 import { newId } from '$lib/server/ids';
+import { isReplaced } from '$lib/server/replaced-panels';
 import type { Scope } from '$lib/server/scope';
 import { makeCast, type Cast } from './cast';
 import { good, makeOrder, type OrderRows } from './lay-orders';
@@ -370,6 +373,33 @@ describe('releasing', () => {
     await layRelease.reopen(scope, id);
     await layRelease.release(scope, copy.id, { version: 1, name: 'y' });
     expect((await lays.read(scope, id)).chosen).toBe(false);
+  });
+
+  test('on panels that the order replaced since says STOP, in lists and to the ticket, until kept or reopened', async () => {
+    await saveGood();
+    const { hash } = await layRelease.release(scope, id, { version: 2, name: 'For cutting' });
+    const says = async () => ({
+      paper: await guides.verdictOnPaper(hash.slice(0, 20)),
+      lists: (await layList.ofOrder(scope, rows.order)).map(({ replaced }) => replaced),
+      lay: await isReplaced(scope, id)
+    });
+    const good = { paper: 'current', lists: [false], lay: false };
+    const stop = { paper: 'replaced', lists: [true], lay: true };
+    expect(await says()).toEqual(good);
+    const item = () => cast.db('order_items').where({ id: rows.item });
+    const next = newId();
+    const first = await cast.db('style_versions').where({ id: rows.styleVersion }).first();
+    await cast.db('style_versions').insert({ ...first, id: next, number: first.number + 1 });
+    expect(await says()).toEqual(good);
+    await item().update({ style_version_id: next });
+    await lays.recount(scope, rows.order);
+    expect(await says()).toEqual(stop);
+    await item().update({ style_version_id: rows.styleVersion });
+    expect(await says()).toEqual(good);
+    await item().update({ style_version_id: next });
+    await layRelease.reopen(scope, id);
+    expect(await says()).toEqual({ paper: 'withdrawn', lists: [false], lay: false });
+    expect(await refusal(isReplaced(cast.elsewhere.owner.scope, id))).toMatchObject({ status: 404 });
   });
 
   test('reopening makes a new version and withdraws the paper; a second release supersedes it', async () => {

@@ -20,5 +20,6 @@ export const stageWords: Readonly<Record<string, Look>> = {
 export const layStateWords: Readonly<Record<string, Look>> = {
   open: { word: 'Open', tone: 'plain', mark: '○' },
   released: { word: 'Released', tone: 'fern', mark: '✓' },
-  cut: { word: 'Cut', tone: 'walnut', mark: '✂' }
+  cut: { word: 'Cut', tone: 'walnut', mark: '✂' },
+  stop: { word: 'STOP: panels replaced', tone: 'madder', mark: '✕' }
 };

@@ -11,6 +11,7 @@ import { newId } from './ids';
 import * as jobs from './jobs';
 import * as layRevisions from './lay-revisions';
 import { notFound, Problem } from './problem';
+import { replacedAmong } from './replaced-panels';
 import type { Scope } from './scope';
 import * as studios from './studios';
 import { runInWorker } from './worker-thread';
@@ -187,7 +188,8 @@ export const job: jobs.JobKind<z.infer<typeof inputSchema>> = {
 const kindWords = { whole: 'whole cloth', sheets: 'sheets', panels: 'panels' } as const;
 
 /** What anybody may learn who holds the paper: nothing of the studio, the order or the client. */
-export type PaperVerdict = 'current' | 'cut' | 'superseded' | 'withdrawn' | 'not-released' | 'unknown';
+export type PaperVerdict =
+  'current' | 'replaced' | 'cut' | 'superseded' | 'withdrawn' | 'not-released' | 'unknown';
 
 /** What a scanned code stands for, whoever asks. `code` is the beginning of a revision's hash. */
 export async function verdictOnPaper(code: string): Promise<PaperVerdict> {
@@ -196,16 +198,26 @@ export async function verdictOnPaper(code: string): Promise<PaperVerdict> {
     .join('lays', 'lays.id', 'lay_revisions.lay_id')
     .where('lay_revisions.hash', 'like', `${code}%`)
     .first<
-      | { id: string; released_at: number | null; now_id: string | null; state: 'open' | 'released' | 'cut' }
+      | {
+          id: string;
+          lay: string;
+          released_at: number | null;
+          now_id: string | null;
+          state: 'open' | 'released' | 'cut';
+        }
       | undefined
     >({
       id: 'lay_revisions.id',
+      lay: 'lays.id',
       released_at: 'lay_revisions.released_at',
       now_id: 'lays.released_revision_id',
       state: 'lays.state'
     });
   if (!row) return 'unknown';
   if (row.released_at === null) return 'not-released';
-  if (row.now_id === row.id) return row.state === 'cut' ? 'cut' : 'current';
+  if (row.now_id === row.id) {
+    if (row.state === 'cut') return 'cut';
+    return (await replacedAmong([row.lay])).has(row.lay) ? 'replaced' : 'current';
+  }
   return row.now_id === null ? 'withdrawn' : 'superseded';
 }

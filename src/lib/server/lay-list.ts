@@ -2,6 +2,7 @@ import { z } from 'zod';
 import type { Share } from '$lib/units/measure';
 import { database } from './database';
 import { containing, pageOf, type Listing, type Page } from './listing';
+import { replacedAmong } from './replaced-panels';
 import type { Scope } from './scope';
 
 /*
@@ -27,6 +28,8 @@ export interface ListedLay {
     readonly current: boolean;
   } | null;
   readonly revision: { readonly id: string; readonly number: number } | null;
+  /** Released on panels that its order has since replaced: not to be cut. */
+  readonly replaced: boolean;
 }
 
 interface LayRow {
@@ -86,7 +89,11 @@ function query(scope: Scope) {
     });
 }
 
-function listedOf(row: LayRow, joined: ReadonlyMap<string, readonly number[]>): ListedLay {
+function listedOf(
+  row: LayRow,
+  joined: ReadonlyMap<string, readonly number[]>,
+  replaced: ReadonlySet<string>
+): ListedLay {
   const verdict = row.verdict === null ? null : verdictSchema.parse(JSON.parse(row.verdict));
   return {
     id: row.id,
@@ -106,7 +113,8 @@ function listedOf(row: LayRow, joined: ReadonlyMap<string, readonly number[]>): 
     revision:
       row.revision_id === null || row.revision_number === null
         ? null
-        : { id: row.revision_id, number: row.revision_number }
+        : { id: row.revision_id, number: row.revision_number },
+    replaced: replaced.has(row.id)
   };
 }
 
@@ -123,7 +131,8 @@ export async function list(
   else containing(lays, ['orders.client_name', 'cloths.name', 'lays.name'], listing.search);
   const page = await pageOf<LayRow, LaySort>(lays, listing, sortColumns, 'lays.id');
   const joined = await joinedOrders(scope, page.rows);
-  return { ...page, rows: page.rows.map((row) => listedOf(row, joined)) };
+  const replaced = await replacedAmong(page.rows.map(({ id }) => id));
+  return { ...page, rows: page.rows.map((row) => listedOf(row, joined, replaced)) };
 }
 
 /** Numbers of the orders that joint lays serve beside their first, by lay. */
@@ -155,7 +164,8 @@ export async function ofOrder(scope: Scope, orderId: string): Promise<ListedLay[
     })
     .orderBy([{ column: 'lays.chosen', order: 'desc' }, 'lays.created_at']);
   const joined = await joinedOrders(scope, rows);
-  return rows.map((row) => listedOf(row, joined));
+  const replaced = await replacedAmong(rows.map(({ id }) => id));
+  return rows.map((row) => listedOf(row, joined, replaced));
 }
 
 /** The lays that serve a line of an order: what a change of the line touches. */

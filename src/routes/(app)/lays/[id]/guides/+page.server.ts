@@ -6,6 +6,7 @@ import * as guides from '$lib/server/guides';
 import * as jobs from '$lib/server/jobs';
 import * as layRevisions from '$lib/server/lay-revisions';
 import * as lays from '$lib/server/lays';
+import { isReplaced } from '$lib/server/replaced-panels';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
@@ -19,6 +20,7 @@ export const load: PageServerLoad = async (event) => {
     revisions[0];
   return {
     lay: { id: event.params.id, name, state, orderId: order.id, orderNumber: order.number },
+    replaced: await isReplaced(scope, event.params.id),
     revisions: revisions.map((one) => ({
       id: one.id,
       number: one.number,
