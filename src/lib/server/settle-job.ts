@@ -65,7 +65,7 @@ export const job: jobs.JobKind<Record<string, unknown>> = {
         placements: laid.placements,
         length: readings.lengthUsed,
         efficiency: readings.efficiency,
-        leftOver: result.leftOver.length,
+        leftOver: result.leftOver.length + settle.notLain,
         at: former.seconds + seconds
       };
       if (!isBetter(next, best)) return;

@@ -1,16 +1,19 @@
 import { spreadKind, spreadWords } from '$lib/cloth/spread';
 import { flawsAsLaid } from '$lib/cloth/flaws-as-laid';
-import type { Flaw, Strip } from '$lib/cloth/strip';
+import { laidWidth, type Flaw } from '$lib/cloth/strip';
 import { placeOutline, snapPlacement } from '$lib/geometry/placement';
 import type { Outline } from '$lib/geometry/point';
 import { TOUCHING } from '$lib/geometry/tolerance';
-import type { LayDocument, LayPlacement, NeedHand } from '$lib/lay/document';
+import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import { flawBox } from '$lib/lay/flaw-room';
 import { balance, panelOfPlacement } from '$lib/lay/needs';
 import { panelOf, type LayPanel, type PanelBook } from '$lib/lay/panel-book';
 import { allowedTurns, againstNap, way as napWay } from '$lib/lay/turns';
 import { nameOf, pieceName } from '$lib/lay/wording';
-import { flipFor, flipIsFree, handAsLaid } from '$lib/lay/yields';
+import { hasRepeat } from '$lib/lay/matching';
+import { laidShape } from '$lib/lay/on-fold';
+import { whereAllowed, type WhereAllowed } from '$lib/lay/where-allowed';
+import { lyingNow, lyingOf, notLain, type Lying } from './lying';
 import type { Lattice, SettlePiece, SettlePlacement, SettleProblem, SettleResult, Way } from './problem';
 
 /** What a settle run is to lay: everything that is not locked, or only what hangs on the Rail. */
@@ -28,17 +31,18 @@ export interface LaySettle {
       { readonly garment: string; readonly panel: string; readonly placements: readonly (string | null)[] }
     >
   >;
+  /** Pieces that are asked for and that this spread can't give by themselves: they stay on the Rail. */
+  readonly notLain: number;
 }
 
 /** A panel that may be turned at will is tried at so many turns. */
 const FREE_TURNS = Array.from({ length: 12 }, (_, i) => i * 30);
 
-/** What of this lay's cloth the search can't do yet, in words for a person; null when it can. */
+/** What of this lay's cloth the search can't do, in words for a person; null when it can. */
 export function beyondSettle({ strip }: Pick<LayDocument, 'strip'>): string | null {
-  const kind = spreadKind(strip);
-  return kind === 'open'
-    ? null
-    : `Settle lays pieces on open, single cloth only; this cloth lies otherwise (${spreadWords(strip)}). Place the pieces by hand, or open the cloth.`;
+  return spreadKind(strip) === 'crosswise'
+    ? `Settle lays no pieces against a fold across the cloth (${spreadWords(strip)}). Place them by hand, or spread the cloth otherwise.`
+    : null;
 }
 
 /** The lay as a problem for the solver, by the rules that the check keeps. */
@@ -55,19 +59,20 @@ export function fromLay(
   const stays = document.placements.filter((one) => one.locked || options.reach === 'loose');
   const moves = document.placements.filter((one) => !one.locked && options.reach === 'all');
   const naps = napsOf(document, book, stays);
+  const moving = new Set(moves.map(({ id }) => id));
   const groups = new Map<string, { piece: SettlePiece; owners: Owner; placements: (string | null)[] }>();
 
-  const add = (garment: string, panel: string, flips: readonly boolean[], placement: string | null) => {
+  const add = (lying: Lying, placement: string | null) => {
+    const { garment, panel, stretch, flips } = lying;
     const known = panelOf(
       book,
       document.garments.find(({ id }) => id === garment),
       panel
-    );
-    if (!known) return null;
-    const id = `${garment}/${panel}/${flips.join()}`;
+    )!;
+    const id = [garment, panel, flips.join(), ...(stretch === 0 ? [] : [stretch])].join('/');
     let group = groups.get(id);
     if (!group) {
-      const piece = pieceOf(id, document, known, garment, flips, naps.get(garment) ?? 0);
+      const piece = pieceOf(id, document, book, known, lying, moving, naps.get(garment) ?? 0);
       groups.set(id, (group = { piece, owners: { garment, panel }, placements: [] }));
     }
     group.placements.push(placement);
@@ -76,14 +81,15 @@ export function fromLay(
 
   const start: SettlePlacement[] = [];
   for (const one of moves) {
-    const panel = panelOfPlacement(document, book, one);
-    const free = panel && flipIsFree(panel, strip);
-    const added = add(one.garment, one.panel, free ? [false, true] : [one.flip], one.id);
-    if (added && options.from === 'here')
+    const lying = lyingNow(document, book, one);
+    if (!lying) continue;
+    const added = add(lying, one.id);
+    if (options.from === 'here')
       start.push({ piece: added.id, copy: added.copy, x: one.x, y: one.y, turn: one.turn, flip: one.flip });
   }
-  for (const one of balance(document, book).loose)
-    add(one.garment, one.panel, flipsOf(one.hand, document, book, one), null);
+  const { loose } = balance(document, book);
+  const laid = lyingOf(document, book, loose);
+  for (const lying of laid) add(lying, null);
 
   const pieces = [...groups.values()].map(({ piece, placements }) => ({
     ...piece,
@@ -91,7 +97,7 @@ export function fromLay(
   }));
   return {
     problem: {
-      width: strip.usableWidth,
+      width: laidWidth(strip),
       length: strip.length,
       outline: strip.given?.outline ?? null,
       keepOuts: flawsAsLaid(strip).map(keepOutOf),
@@ -102,14 +108,21 @@ export function fromLay(
       locked: stays.flatMap((one) => {
         const panel = panelOfPlacement(document, book, one);
         return panel
-          ? [{ id: one.id, name: nameOf(document, book, one), outline: placeOutline(panel.shape.cut, one) }]
+          ? [
+              {
+                id: one.id,
+                name: nameOf(document, book, one),
+                outline: placeOutline(laidShape(panel, one, strip).cut, one)
+              }
+            ]
           : [];
       }),
       start
     },
     pieces: Object.fromEntries(
       [...groups].map(([id, { owners, placements }]) => [id, { ...owners, placements }])
-    )
+    ),
+    notLain: notLain(loose, laid, document, book)
   };
 }
 
@@ -145,48 +158,59 @@ export function toPlacements(
   ];
 }
 
-function flipsOf(hand: NeedHand, document: LayDocument, book: PanelBook, owner: Owner): readonly boolean[] {
-  const panel = panelOf(
-    book,
-    document.garments.find(({ id }) => id === owner.garment),
-    owner.panel
-  );
-  if (!panel || flipIsFree(panel, document.strip)) return [false, true];
-  return [flipFor(hand, panel, document.strip)];
-}
-
 function pieceOf(
   id: string,
   document: LayDocument,
+  book: PanelBook,
   panel: LayPanel,
-  garment: string,
-  flips: readonly boolean[],
+  { garment, panel: panelId, stretch: number, flips, words }: Lying,
+  moving: ReadonlySet<string>,
   nap: 1 | -1 | 0
 ): SettlePiece {
   const { strip } = document;
+  const where = whereAllowed(document, book, { garment, panel: panelId }, moving)!;
+  const stretch = where.stretches[number]!;
   const turns = allowedTurns(panel, strip) ?? FREE_TURNS.filter((turn) => !againstNap(panel, strip, turn));
-  const ways = turns
-    .flatMap((turn) => flips.map((flip): Way => ({ turn, flip, nap: napWay(panel.turns, turn) })))
+  const lying = stretch.ways ?? turns.flatMap((turn) => flips.map((flip) => ({ turn, flip })));
+  const ways = lying
+    .map(({ turn, flip }): Way => ({ turn, flip, nap: napWay(panel.turns, turn) }))
     .filter((one) => nap === 0 || one.nap === 0 || one.nap === nap);
-  const lattice = latticeOf(document, panel, garment);
-  // Both of a pair are tilted alike: neither is. On stripes and checks nothing is.
-  const tilts = panel.turns !== 'free' && !panel.paired && !strip.repeat.along && !strip.repeat.across;
+  // One lattice serves all ways of a piece: those that ask for another one are left out.
+  const lattice = ways[0] ? latticeOf(where, ways[0]) : null;
+  const agreeing = lattice ? ways.filter((way) => sameLattice(lattice, latticeOf(where, way))) : ways;
+  // Both of a pair are tilted alike: neither is. On stripes and checks, and on the fold, nothing is.
+  const tilts =
+    panel.turns !== 'free' &&
+    !panel.paired &&
+    !hasRepeat(strip) &&
+    stretch.fold === null &&
+    strip.spread.length === 1;
   return {
     id,
-    name: pieceName(
-      panel,
-      flips.length > 1 ? 'either' : handAsLaid({ flip: flips[0]! }, panel, strip),
-      document.garments.find((one) => one.id === garment)?.label
-    ),
-    outline: panel.shape.cut,
+    name: `${pieceName(panel, words, document.garments.find((one) => one.id === garment)?.label)}${stretch.fold ? ', on the fold' : ''}`,
+    outline: stretch.shape.cut,
     copies: 0,
-    ways,
+    ways: agreeing,
     tilt: tilts ? panel.grainTolerance : 0,
     napGroup: strip.nap === 'garmentWay' ? garment : null,
-    onFold: false,
-    band: null,
+    onFold: stretch.fold !== null,
+    band: stretch.band.from > 0 || stretch.band.to < laidWidth(strip) ? stretch.band : null,
     lattice
   };
+}
+
+/** Where the repeat may take a piece that lies in `way`: by its first match point. */
+function latticeOf(where: WhereAllowed, way: Way): Lattice | null {
+  return where.latticesFor(way)[0] ?? null;
+}
+
+function sameLattice(a: Lattice, b: Lattice | null): boolean {
+  const same = (one: Lattice['x'], other: Lattice['x']): boolean => {
+    if (!one || !other) return one === other;
+    const apart = (one.at - other.at) / one.size;
+    return Math.abs(apart - Math.round(apart)) < 1e-9;
+  };
+  return b !== null && a.group === b.group && same(a.x, b.x) && same(a.y, b.y);
 }
 
 /** Which way each garment runs by the pieces that stay, on cloth where a garment runs one way. */
@@ -200,21 +224,6 @@ function napsOf(document: LayDocument, book: PanelBook, stays: readonly LayPlace
   }
   return naps;
 }
-
-/** Where the repeat may take a panel: its match point of a match group on a line of the repeat. */
-function latticeOf(document: LayDocument, panel: LayPanel, garment: string): Lattice | null {
-  const { along, across } = document.strip.repeat;
-  if (!along && !across) return null;
-  for (const group of document.rules.matchGroups)
-    for (const one of group.points) {
-      if (one.garment !== garment || one.panel !== panel.shape.panel) continue;
-      const point = panel.shape.matchPoints.find(({ id }) => id === one.point);
-      if (point) return { anchor: point.at, x: line(along), y: line(across), group: null };
-    }
-  return null;
-}
-
-const line = (repeat: Strip['repeat']['along']) => repeat && { size: repeat.size, at: repeat.offset };
 
 /** What a flaw takes: its box, grown by its radius where it has one. */
 function keepOutOf(flaw: Flaw): Outline {

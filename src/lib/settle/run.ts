@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { spreadKind } from '$lib/cloth/spread';
 import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import type { PanelBook } from '$lib/lay/panel-book';
 import type { Finding, FindingKind, Verdict } from '$lib/lay/verdict';
@@ -71,7 +72,8 @@ export function problemOfRun(
 ): RunProblem {
   const reach: SettleReach = choice.pieces;
   if (!best) {
-    const begun = reach === 'all' ? withNeededHands(document, book) : document;
+    const begun =
+      reach === 'all' && spreadKind(document.strip) === 'open' ? withNeededHands(document, book) : document;
     const settle = fromLay(begun, book, { reach, from: choice.from, side: choice.side });
     return { settle, placementsOf: (result, newId) => toPlacements(begun, settle, result, newId) };
   }
@@ -114,7 +116,10 @@ const ofPlaces: readonly FindingKind[] = [
   'outside-edge',
   'off-grain',
   'against-nap',
-  'flaw'
+  'flaw',
+  'straddles',
+  'near-fold',
+  'mismatch'
 ];
 
 /**

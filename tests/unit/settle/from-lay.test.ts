@@ -6,6 +6,7 @@ import { fromLay, toPlacements, type SettleFrom, type SettleReach } from '$lib/s
 import { problemFaults } from '$lib/settle/faults';
 import { createSolver } from '$lib/settle/solver';
 import { validate } from '$lib/settle/validate';
+import { back, spread } from '../lay/folded-workroom';
 import * as workroom from '../lay/workroom';
 
 /** The lay with everything settled, by the product's own check. */
@@ -147,5 +148,102 @@ describe('what is there already', () => {
     expect(problemFaults(problem).map(({ message }) => message)).toContainEqual(
       expect.stringMatching(/^Yoke of Ada is 120 mm across in every way it may lie; the cloth is 110 mm wide/)
     );
+  });
+});
+
+describe('cloth in folds and plies', () => {
+  const small = workroom.panel('pocket', workroom.rectangle(120, 90), { symmetric: true, howMany: 2 });
+  const paired = workroom.panel('front', workroom.star([180, 90, 150, 120, 70, 160, 100]), {
+    howMany: 2,
+    paired: true
+  });
+  const folded = workroom.bookOf(paired, small, back());
+  const spreads: [string, Parameters<typeof spread>[0], number][] = [
+    ['folded lengthwise', { kind: 'lengthwise' }, 0],
+    ['folded in part', { kind: 'lengthwise', depth: 420 }, 0],
+    ['two plies facing up', { kind: 'pliesUp', plies: 2 }, 0],
+    ['two plies face to face', { kind: 'faceToFace', plies: 2 }, 0]
+  ];
+  it.each(spreads)('%s: every piece is given once, by the product’s own check', (_, choice) => {
+    const document = workroom.lay(folded, [], spread(choice), two);
+    const { verdict, settle } = settled(document, folded);
+    const { placed, loose, needed } = verdict.readings.pieces;
+    expect(placed).toBe(needed - settle.notLain);
+    expect(loose).toBe(settle.notLain);
+    expect(
+      verdict.findings
+        .filter(({ severity, kind }) => severity === 'stops' && kind !== 'missing')
+        .map(({ message }) => message)
+    ).toEqual([]);
+    const onFold = settle.problem.pieces.filter(({ onFold }) => onFold);
+    expect(onFold.length).toBe(choice.kind === 'lengthwise' ? 2 : 0);
+  });
+
+  it('leaves a single hand on the Rail where the cloth is doubled, and lays it where it lies single', () => {
+    const odd = workroom.bookOf(workroom.panel('flap', workroom.ell, { howMany: 1 }));
+    const whole = settled(workroom.lay(odd, [], spread({ kind: 'lengthwise' })), odd);
+    expect(whole.settle.notLain).toBe(1);
+    expect(whole.after.placements).toEqual([]);
+    const part = settled(workroom.lay(odd, [], spread({ kind: 'lengthwise', depth: 300 })), odd);
+    expect(part.settle.notLain).toBe(0);
+    expect(part.verdict.findings.filter(({ severity }) => severity === 'stops')).toEqual([]);
+  });
+
+  it('goes on from here on the fold', () => {
+    const document = workroom.lay(folded, [], spread({ kind: 'lengthwise' }), two);
+    const first = settled(document, folded).after;
+    const again = settled(first, folded, { reach: 'all', from: 'here' });
+    expect(again.verdict.findings.filter(({ severity }) => severity === 'stops')).toEqual([]);
+    expect(again.after.placements.map(({ id }) => id).sort()).toEqual(
+      first.placements.map(({ id }) => id).sort()
+    );
+    expect(again.result.length).toBeLessThanOrEqual(check(first, folded).readings.lengthUsed + 0.01);
+  });
+});
+
+describe('stripes and checks', () => {
+  const pointed = (
+    name: string,
+    at: { x: number; y: number },
+    changes: Parameters<typeof workroom.panel>[2] = {}
+  ) => {
+    const plain = workroom.panel(name, workroom.rectangle(260, 180), { symmetric: true, ...changes });
+    return { ...plain, shape: { ...plain.shape, matchPoints: [{ id: 'm', name: 'm', at }] } };
+  };
+  const matched = workroom.bookOf(
+    pointed('front', { x: 40, y: 0 }),
+    pointed('pocket', { x: 10, y: 90 }),
+    pointed('cuff', { x: 200, y: 180 })
+  );
+  const groups = (garments: readonly string[]) =>
+    garments.map((garment) => ({
+      id: `match-${garment}`,
+      mirrored: false,
+      points: ['front', 'pocket', 'cuff'].map((panel) => ({ garment, panel, point: 'm' }))
+    }));
+  it.each([
+    ['any way', { nap: 'none' as const }],
+    ['one way', { nap: 'oneWay' as const }]
+  ])('a garment’s panels fall on one place of the repeat, napped %s', (_, changes) => {
+    const strip = workroom.strip({
+      ...changes,
+      repeat: {
+        along: { size: 62, offset: 7, symmetric: true },
+        across: { size: 48, offset: 5, symmetric: true }
+      }
+    });
+    const plain = workroom.lay(matched, [], strip, two);
+    const document: LayDocument = {
+      ...plain,
+      rules: { ...plain.rules, matchGroups: groups(plain.garments.map(({ id }) => id)) }
+    };
+    const { verdict, after } = settled(document, matched);
+    expect(after.placements.length).toBeGreaterThanOrEqual(6);
+    expect(verdict.findings.filter(({ severity }) => severity === 'stops')).toEqual([]);
+    // One piece stays where it was put by hand: the others follow it.
+    const [first] = after.placements;
+    const held: LayDocument = { ...after, placements: [{ ...first!, x: first!.x + 11, locked: true }] };
+    const again = settled(held, matched);
+    expect(again.verdict.findings.filter(({ severity }) => severity === 'stops')).toEqual([]);
   });
 });
