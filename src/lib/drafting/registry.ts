@@ -7,6 +7,7 @@ import { corset } from './drafts/corset';
 import { gatheredSkirt } from './drafts/gathered-skirt';
 import { skirtBlock } from './drafts/skirt-block';
 import { sleeveBlock } from './drafts/sleeve-block';
+import { trouserBlock } from './drafts/trouser-block';
 
 /** Every draft that the product knows, in the order in which they are offered. */
 export const drafts: readonly Draft[] = [
@@ -15,6 +16,7 @@ export const drafts: readonly Draft[] = [
   bodiceBlock,
   sleeveBlock,
   skirtBlock,
+  trouserBlock,
   circleSkirt,
   gatheredSkirt,
   bands
