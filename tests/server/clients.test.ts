@@ -134,6 +134,7 @@ describe('size tables of a studio', () => {
 describe('a draft run', () => {
   it('is drawn for measurements, kept as a style once, and says what the order was drafted for', async () => {
     const { scope } = cast.here.patternMaker;
+    const client = await clients.create(scope, { name: 'Sunniva', email: '', phone: '', note: '' });
     const set = read({ waist: '72 cm' });
     if (!set.ok) throw new Error('The form holds.');
     const id = await draftRuns.create(
@@ -147,7 +148,15 @@ describe('a draft run', () => {
     expect(version.panels[0]).toMatchObject({ howMany: 4 });
     expect(await draftRuns.behindVersion(scope, kept.versionId)).toMatchObject({
       measuredOn: '2026-05-31',
-      clientId: client
+      clientId: client,
+      newer: null
+    });
+    const later = readMeasurements({ ...head, takenOn: '2026-07-02', waist: '74 cm' }, 'cm');
+    if (!later.ok) throw new Error('The form holds.');
+    const again = await sets.create(scope, client, later.set);
+    expect(await draftRuns.behindVersion(scope, kept.versionId)).toMatchObject({
+      measuredOn: '2026-05-31',
+      newer: { id: again, takenOn: '2026-07-02' }
     });
     await expect(draftRuns.keep(scope, id, { name: 'Again' })).rejects.toMatchObject({ status: 409 });
     await expect(draftRuns.read(cast.elsewhere.owner.scope, id)).rejects.toMatchObject({ status: 404 });

@@ -244,19 +244,31 @@ export async function keep(
   });
 }
 
+/** What a version of a style was drafted from. */
+export interface DraftedFrom {
+  readonly id: string;
+  readonly draft: string;
+  readonly clientId: string | null;
+  readonly measuredOn: string | null;
+  readonly size: string;
+  /** The client's latest set, where she was measured again since. */
+  readonly newer: { readonly id: string; readonly takenOn: string } | null;
+}
+
 /** The run behind a version of a style, if it was drafted: what an order says of its measurements. */
-export async function behindVersion(
-  scope: Scope,
-  versionId: string
-): Promise<{ id: string; clientId: string | null; measuredOn: string | null; size: string } | null> {
+export async function behindVersion(scope: Scope, versionId: string): Promise<DraftedFrom | null> {
   const row = await database()('draft_runs')
     .leftJoin('measurement_sets', 'measurement_sets.id', 'draft_runs.set_id')
     .where({ 'draft_runs.studio_id': scope.studio, style_version_id: versionId })
-    .first<{ id: string; clientId: string | null; measuredOn: string | null; size: string } | undefined>({
+    .first<Omit<DraftedFrom, 'newer'> | undefined>({
       id: 'draft_runs.id',
+      draft: 'draft_runs.draft',
       clientId: 'draft_runs.client_id',
       measuredOn: 'measurement_sets.taken_on',
       size: 'draft_runs.size'
     });
-  return row ?? null;
+  if (!row) return null;
+  const [latestSet] = row.clientId ? await sets.list(scope, row.clientId) : [];
+  const newer = latestSet && row.measuredOn && latestSet.takenOn > row.measuredOn ? latestSet : null;
+  return { ...row, newer: newer && { id: newer.id, takenOn: newer.takenOn } };
 }

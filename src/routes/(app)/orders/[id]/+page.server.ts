@@ -1,6 +1,7 @@
 import { error, redirect, type ActionFailure } from '@sveltejs/kit';
 import { dayAt } from '$lib/units/days';
 import * as cloths from '$lib/server/cloths';
+import * as draftRuns from '$lib/server/draft-runs';
 import { readForm, refuse, typedValues, type Refused } from '$lib/server/forms';
 import { allow, orErrorPage } from '$lib/server/guard';
 import * as layList from '$lib/server/lay-list';
@@ -10,6 +11,7 @@ import { moneyOf } from '$lib/server/money-card';
 import * as orders from '$lib/server/orders';
 import { may } from '$lib/server/permissions';
 import { Problem } from '$lib/server/problem';
+import type { Scope } from '$lib/server/scope';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
@@ -29,6 +31,7 @@ export const load: PageServerLoad = async (event) => {
     cloths: mayChange ? await cloths.choices(scope) : [],
     stages: orders.stages,
     money: may(scope.role, 'prices: see') ? await moneyOf(scope, order.id) : null,
+    drafted: await draftedOf(scope, may(scope.role, 'measurements: see') ? order.items : []),
     mayChange,
     mayLay: may(scope.role, 'lays: change'),
     lengthUnit: studio.lengthUnit,
@@ -36,6 +39,19 @@ export const load: PageServerLoad = async (event) => {
     today: dayAt(Date.now(), studio.timeZone)
   };
 };
+
+/** What each line's panels were drafted from, by style version; versions that were not drafted are absent. */
+async function draftedOf(
+  scope: Scope,
+  items: readonly { readonly style: { readonly versionId: string } }[]
+): Promise<Record<string, draftRuns.DraftedFrom>> {
+  const found: Record<string, draftRuns.DraftedFrom> = {};
+  for (const { style } of items) {
+    const from = await draftRuns.behindVersion(scope, style.versionId);
+    if (from) found[style.versionId] = from;
+  }
+  return found;
+}
 
 /** Runs a change; what is refused at fields, or because the order changed meanwhile, goes back into the form. */
 async function orRefusal(
