@@ -222,6 +222,31 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     })
   },
 
+  // The cutting room.
+  '/cutting load': { access: 'lays: cut' },
+  '/cutting/[lay] load': { access: 'lays: cut', call: (own) => params({ lay: own.releasedLay }) },
+  '/cutting/[lay] ?/measureIn': {
+    access: 'lays: cut',
+    answers: [200],
+    call: (own) => params({ lay: own.releasedLay }, { form: { width: '80 cm' } })
+  },
+  '/cutting/[lay] ?/record': {
+    access: 'lays: cut',
+    // The table never closes the lay: other routes need it released.
+    answers: [400],
+    call: (own) => params({ lay: own.releasedLay }, { form: { lengthUsed: 'long' } })
+  },
+  '/api/cutting/[lay]/ticks POST': {
+    access: 'lays: cut',
+    call: (own) => params({ lay: own.releasedLay }, { json: { ticks: [{ placement: 'p1', cut: true }] } }),
+    foreign: (own) => ({
+      placement: params(
+        { lay: own.releasedLay },
+        { json: { ticks: [{ placement: 'of another lay', cut: true }] } }
+      )
+    })
+  },
+
   // Clients, measurements, drafts.
   '/clients load': { access: 'clients: see contact' },
   '/clients/new load': { access: 'clients: see contact' },

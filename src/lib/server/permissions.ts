@@ -28,6 +28,8 @@ const table = {
   'lays: see': ['owner', 'patternMaker', 'cutter'],
   'lays: change': ['owner', 'patternMaker', 'cutter'],
   'lays: release': ['owner', 'patternMaker', 'cutter'],
+  /** Ticking off and recording the cut. */
+  'lays: cut': ['owner', 'patternMaker', 'cutter'],
   'guides: print': ['owner', 'patternMaker', 'cutter'],
   'audit: see': ['owner'],
   'demo: clear': ['owner']

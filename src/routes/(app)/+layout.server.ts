@@ -11,6 +11,7 @@ export const load: LayoutServerLoad = ({ locals, url }) => {
     ? [
         { href: '/orders', word: 'Orders' },
         { href: '/lays', word: 'Lays' },
+        { href: '/cutting', word: 'Cutting' },
         ...(may(scope.role, 'measurements: see')
           ? [
               { href: '/clients', word: 'Clients' },
