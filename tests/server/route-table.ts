@@ -222,6 +222,11 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     })
   },
 
+  '/api/revisions/[id]/files/[kind] GET': {
+    access: 'guides: print',
+    call: (own) => params({ id: own.revision, kind: 'csv' })
+  },
+
   // The cutting room.
   '/cutting load': { access: 'lays: cut' },
   '/cutting/[lay] load': { access: 'lays: cut', call: (own) => params({ lay: own.releasedLay }) },
