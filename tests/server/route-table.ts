@@ -506,6 +506,10 @@ export const routeTable: Readonly<Record<string, Entry>> = {
   '/orders/[id]/quotes/[number] ?/withdraw': { access: 'prices: change', call: (own) => onQuote(own, {}) },
   '/api/orders/[id]/quotes/[number]/pdf GET': { access: 'prices: see', call: (own) => onQuote(own) },
   '/orders/[id]/payments load': { access: 'prices: see', call: (own) => onOrder(own) },
+  '/orders/[id]/payments ?/waive': {
+    access: 'payments: manage',
+    call: (own) => onOrder(own, { waiverNote: 'An old client' })
+  },
   '/orders/[id]/payments ?/record': {
     access: 'payments: manage',
     call: (own) => onOrder(own, byHand())

@@ -7,6 +7,7 @@ import { panelKey, type PanelBook } from '$lib/lay/panel-book';
 import type { Verdict } from '$lib/lay/verdict';
 import * as audit from './audit';
 import { database } from './database';
+import { refuseWithoutDeposit } from './deposit-rule';
 import { newId } from './ids';
 import {
   current,
@@ -155,6 +156,7 @@ export async function release(
       { verdict: made.verdict }
     );
   }
+  await refuseWithoutDeposit(scope, await ordersOf(scope, lay.row));
   const name = naming.name;
   const done = await database().transaction(async (trx) => {
     const row = await rowOf(scope, layId, trx);

@@ -1,9 +1,11 @@
 import { error, redirect } from '@sveltejs/kit';
+import { z } from 'zod';
 import { dayAt } from '$lib/units/days';
 import { parseMoney } from '$lib/units/money';
 import * as cardPayments from '$lib/server/card-payments';
 import * as clientLinks from '$lib/server/client-links';
-import { orRefusal, readForm, refuse, typedValues } from '$lib/server/forms';
+import * as depositRule from '$lib/server/deposit-rule';
+import { line, orRefusal, readForm, refuse, typedValues } from '$lib/server/forms';
 import { allow, orErrorPage } from '$lib/server/guard';
 import * as orderQuestions from '$lib/server/order-questions';
 import * as orders from '$lib/server/orders';
@@ -21,6 +23,7 @@ export const load: PageServerLoad = async (event) => {
   return {
     order: { id, number: order.number, clientName: order.clientName },
     account: await payments.account(scope, id),
+    waiver: await depositRule.waiver(scope, id),
     quotes: await quotes.list(scope, id),
     links: await clientLinks.list(scope, id),
     questions: await orderQuestions.list(scope, id),
@@ -38,6 +41,21 @@ export const load: PageServerLoad = async (event) => {
 const back = (id: string): never => redirect(303, `/orders/${id}/payments`);
 
 export const actions: Actions = {
+  waive: async (event) => {
+    const scope = allow(event, 'payments: manage');
+    const { id } = event.params;
+    await orErrorPage(orders.read(scope, id));
+    const form = await readForm(
+      event.request,
+      z.object({ waiverNote: line('Why may it be cut without the deposit?', 300) })
+    );
+    if (!form.ok) {
+      form.refusal.data.values.what = 'waive';
+      return form.refusal;
+    }
+    await depositRule.waive(scope, id, form.data.waiverNote);
+    return back(id);
+  },
   record: async (event) => {
     const scope = allow(event, 'payments: manage');
     const { id } = event.params;
