@@ -327,6 +327,10 @@ export const routeTable: Readonly<Record<string, Entry>> = {
     })
   },
   '/drafts/runs/[id] load': { access: 'measurements: see', call: (own) => params({ id: own.draftRun }) },
+  '/api/drafts/runs/[id]/sheet GET': {
+    access: 'measurements: see',
+    call: (own) => params({ id: own.draftRun })
+  },
   '/drafts/runs/[id] ?/keep': {
     access: 'styles: change',
     answers: [303, 409],
