@@ -1,10 +1,13 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { openChoice, spreadOf } from '$lib/cloth/spread';
 import * as clothLengths from '$lib/server/cloth-lengths';
 import * as cutting from '$lib/server/cutting';
 import { database } from '$lib/server/database';
+import { newId } from '$lib/server/ids';
 import * as lays from '$lib/server/lays';
 import * as layRelease from '$lib/server/lay-release';
 import { makeCast, type Cast } from './cast';
+import { cutPanel, makeOrder } from './lay-orders';
 import { makeProps, type Props } from './props';
 
 let cast: Cast;
@@ -41,13 +44,62 @@ describe('the cutting room', () => {
     ).rejects.toMatchObject({ status: 404 });
   });
 
-  it('says which pieces no longer fit a narrower cloth, and by how much', async () => {
+  it('says which pieces no longer fit a narrower or a shorter cloth, and by how much', async () => {
     const { scope } = cast.here.cutter;
     const { pieces } = await cutting.ticket(scope, own.releasedLay);
-    const high = pieces[0]!.box.maxY;
-    expect(await cutting.tooNarrow(scope, own.releasedLay, { width: high, length: null })).toEqual([]);
-    const [piece] = await cutting.tooNarrow(scope, own.releasedLay, { width: high - 12, length: null });
-    expect(piece).toMatchObject({ way: 'across', over: expect.closeTo(12, 6) });
+    const { maxX, maxY } = pieces[0]!.box;
+    const ends = 40;
+    expect(await cutting.unfit(scope, own.releasedLay, { width: maxY, length: maxX + ends })).toEqual([]);
+    expect(await cutting.unfit(scope, own.releasedLay, { width: maxY - 12, length: null })).toEqual([
+      expect.stringContaining('12 mm')
+    ]);
+    expect(await cutting.unfit(scope, own.releasedLay, { width: maxY, length: maxX + ends - 9 })).toEqual([
+      expect.stringContaining('9 mm')
+    ]);
+    await expect(cutting.unfit(scope, own.releasedLay, { width: maxY, length: 30 })).rejects.toMatchObject({
+      status: 400
+    });
+  });
+
+  it('measures folded cloth as it is folded: what is missing of the open width is missing by half', async () => {
+    const { scope } = cast.here.owner;
+    const outline = [
+      { x: 0, y: 0 },
+      { x: 300, y: 0 },
+      { x: 300, y: 100 },
+      { x: 0, y: 100 }
+    ];
+    const front = cutPanel('front', outline, { paired: true, howMany: 2 });
+    const rows = await makeOrder(scope, { number: 301, style: [front] });
+    const { id } = await lays.create(scope, { orderId: rows.order, clothId: rows.main });
+    const { document, version } = await lays.read(scope, id);
+    const spread = spreadOf(document.strip, { ...openChoice, kind: 'lengthwise' });
+    const width = document.strip.usableWidth;
+    await lays.save(scope, id, {
+      version,
+      saveId: newId(),
+      document: {
+        ...document,
+        strip: { ...document.strip, spread },
+        placements: [
+          {
+            id: 'pair',
+            panel: 'front',
+            garment: document.garments[0]!.id,
+            x: 0,
+            y: width / 2 - 100,
+            turn: 0,
+            flip: false,
+            locked: false
+          }
+        ]
+      }
+    });
+    await layRelease.release(scope, id, { version: (await lays.read(scope, id)).version, name: 'Folded' });
+    expect(await cutting.unfit(scope, id, { width, length: null })).toEqual([]);
+    expect(await cutting.unfit(scope, id, { width: width - 200, length: null })).toEqual([
+      expect.stringContaining('100 mm')
+    ]);
   });
 
   it('records the cut once, closes the lay for good, and needs a roll before it keeps remnants', async () => {

@@ -1,12 +1,13 @@
-import { laidWidth } from '$lib/cloth/strip';
-import { spreadWords } from '$lib/cloth/spread';
+import { laidWidth, type Zone } from '$lib/cloth/strip';
+import { choiceOf, spreadOf, spreadWords } from '$lib/cloth/spread';
+import { check } from '$lib/lay/check';
 import { prepare, placePrepared, outlineOf } from '$lib/geometry/prepared';
 import type { Box } from '$lib/geometry/point';
 import { emptyRectangles, SMALLEST_REMNANT } from '$lib/lay/empty-rectangles';
 import { panelOfPlacement } from '$lib/lay/needs';
 import { laidShape } from '$lib/lay/on-fold';
 import { nameOf } from '$lib/lay/wording';
-import type { LayPlacement } from '$lib/lay/document';
+import type { LayDocument, LayPlacement } from '$lib/lay/document';
 import type { Millimetres } from '$lib/units/measure';
 import * as audit from './audit';
 import * as clothLengths from './cloth-lengths';
@@ -15,7 +16,7 @@ import { newId } from './ids';
 import * as layLengths from './lay-lengths';
 import * as layRevisions from './lay-revisions';
 import { isReplaced, replacedAmong } from './replaced-panels';
-import { notFound, Problem } from './problem';
+import { invalid, notFound, Problem } from './problem';
 import type { Scope } from './scope';
 
 /*
@@ -230,23 +231,39 @@ export async function tick(
   });
 }
 
-/** The pieces that reach beyond a narrower cloth or a shorter one than planned, with how far. */
-export async function tooNarrow(
+/**
+ * What stops the lay on the cloth as it was measured: the same spread laid anew with the width between the selvedges (folded cloth
+ * loses half of what is missing), and with the length less the end allowances. Empty only if the whole check has nothing against it.
+ * @throws Problem 400 for a width on which the cloth can't be spread so at all.
+ */
+export async function unfit(
   scope: Scope,
   layId: string,
   met: { readonly width: Millimetres; readonly length: Millimetres | null }
-): Promise<{ name: string; over: Millimetres; way: 'across' | 'along' }[]> {
-  const { pieces } = await ticket(scope, layId);
-  return pieces.flatMap(({ name, box }) => {
-    const across = box.maxY - met.width;
-    const along = met.length === null ? 0 : box.maxX - met.length;
-    if (across <= 0.01 && along <= 0.01) return [];
-    return [
-      across >= along
-        ? { name, over: across, way: 'across' as const }
-        : { name, over: along, way: 'along' as const }
-    ];
-  });
+): Promise<string[]> {
+  const row = await rowOf(scope, layId);
+  const { document, panels } = await layRevisions.readById(scope, row.revision);
+  const { strip } = document;
+  const width = {
+    usableWidth: met.width,
+    fullWidth: met.width + Math.max(0, strip.fullWidth - strip.usableWidth)
+  };
+  const ends = strip.endAllowance.start + strip.endAllowance.end;
+  let spread: Zone[];
+  try {
+    spread = spreadOf(width, choiceOf(strip));
+  } catch (fault) {
+    if (fault instanceof RangeError)
+      throw invalid({ width: `The cloth can't be spread so: ${fault.message}` });
+    throw fault;
+  }
+  if (met.length !== null && met.length <= ends)
+    throw invalid({ length: 'Nothing is left of it between the end allowances.' });
+  const length = met.length === null ? strip.length : met.length - ends;
+  const real: LayDocument = { ...document, strip: { ...strip, ...width, spread, length } };
+  return check(real, panels)
+    .findings.filter(({ severity }) => severity === 'stops')
+    .map(({ message }) => message);
 }
 
 export interface CutInput {

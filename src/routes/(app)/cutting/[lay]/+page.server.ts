@@ -45,14 +45,11 @@ export const actions: Actions = {
     const { read, errors } = lengths(values, event.locals.studio!.lengthUnit, ['width', 'length']);
     if (read.width == null) errors.width ??= 'Measure the narrowest of three places, between the selvedges.';
     if (Object.keys(errors).length > 0) return refuse(values, errors);
-    return {
-      values,
-      errors: {},
-      met: await cutting.tooNarrow(scope, event.params.lay, {
-        width: read.width!,
-        length: read.length ?? null
-      })
-    };
+    let met: string[] = [];
+    const refused = await orRefusal(values, async () => {
+      met = await cutting.unfit(scope, event.params.lay, { width: read.width!, length: read.length ?? null });
+    });
+    return refused ?? { values, errors: {}, met };
   },
   record: async (event) => {
     const scope = allow(event, 'lays: cut');
